@@ -1,0 +1,3 @@
+//! The flat circuit: scopes, parameters, includes and expansion, from statements to elements and nets.
+
+pub(crate) mod model;

@@ -1,0 +1,5 @@
+//! Reviews the wiring of open-collector sink arrays in SPICE-style netlists.
+
+mod base;
+mod circuit;
+mod netlist;
