@@ -2,4 +2,9 @@
 
 mod base;
 mod circuit;
+mod judge;
 mod netlist;
+mod review;
+
+pub use judge::finding::{Class, Verdict};
+pub use review::Review;
