@@ -2,6 +2,7 @@
 
 mod base;
 mod circuit;
+mod connect;
 mod judge;
 mod netlist;
 mod review;

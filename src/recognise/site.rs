@@ -1,0 +1,72 @@
+//! An array's site: its channels with everything around them, looked up once and then only read.
+
+use crate::base::table::Id;
+use crate::circuit::model::Net;
+
+use super::array::{Array, Channel};
+use super::board::Board;
+use super::driver::Drivers;
+use super::load::{Hanging, Load};
+use super::turn_off::Ways;
+
+/// One array with its surroundings.
+#[derive(Debug)]
+pub(crate) struct Site<'b> {
+    /// The board it stands on.
+    pub board: &'b Board<'b>,
+    /// Its number among the board's arrays.
+    pub number: usize,
+    /// The array.
+    pub array: &'b Array,
+    /// Its channels, in the order of the array's.
+    pub channels: Vec<ChannelSite<'b>>,
+}
+
+/// One channel with its surroundings.
+#[derive(Debug)]
+pub(crate) struct ChannelSite<'b> {
+    /// The channel.
+    pub channel: &'b Channel,
+    /// What hangs on its output.
+    pub hanging: Hanging,
+    /// The ways by which each load's energy leaves, in the order of the loads.
+    pub ways: Vec<Ways>,
+    /// What can move its inputs, in their order.
+    pub drivers: Vec<Drivers>,
+    /// Its output goes nowhere and nothing drives its input.
+    pub spare: bool,
+}
+
+impl<'b> Site<'b> {
+    /// Looks around array number `number` of `board`.
+    pub(crate) fn of(board: &'b Board<'b>, number: usize) -> Self {
+        let array = &board.arrays[number];
+        let channels = array.channels.iter().map(|channel| ChannelSite::of(board, array, channel)).collect();
+        Self { board, number, array, channels }
+    }
+}
+
+impl<'b> ChannelSite<'b> {
+    fn of(board: &'b Board<'b>, array: &'b Array, channel: &'b Channel) -> Self {
+        let hanging = Hanging::of(board, channel.output.net);
+        let ways = hanging.loads.iter().map(|load| Ways::of(board, array, channel, &hanging, load)).collect();
+        let drivers: Vec<Drivers> = channel.inputs.iter().map(|pin| Drivers::of(board, pin.net)).collect();
+        let spare = board.is_lone(channel.output.net) && drivers.iter().all(|drivers| drivers.active().next().is_none());
+        Self { channel, hanging, ways, drivers, spare }
+    }
+
+    /// The load at `row` with its ways.
+    pub(crate) fn loads(&self) -> impl Iterator<Item = (&Load, &Ways)> {
+        self.hanging.loads.iter().zip(&self.ways)
+    }
+
+    /// Whether the channel has anything to drive.
+    pub(crate) fn has_load(&self) -> bool {
+        !self.hanging.loads.is_empty()
+    }
+
+    /// The net at its output.
+    pub(crate) fn output(&self) -> Id<Net> {
+        self.channel.output.net
+    }
+}
