@@ -4,6 +4,7 @@ mod base;
 mod circuit;
 mod judge;
 mod netlist;
+mod notes;
 mod review;
 
 pub use judge::finding::{Class, Verdict};
