@@ -3,3 +3,4 @@
 #![allow(dead_code)]
 
 pub(crate) mod model;
+pub(crate) mod word;
