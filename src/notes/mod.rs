@@ -2,5 +2,13 @@
 // Lifted when the pipeline is joined.
 #![allow(dead_code)]
 
+mod fields;
+mod guard;
 pub(crate) mod model;
+pub(crate) mod names;
+pub(crate) mod near;
+pub(crate) mod read;
 pub(crate) mod word;
+
+#[cfg(test)]
+mod tests;

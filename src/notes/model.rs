@@ -309,6 +309,15 @@ pub(crate) struct Date {
     pub day: u8,
 }
 
+impl PinNotes {
+    /// Every pin that is named, in the order of the fields.
+    pub(crate) fn all(&self) -> impl Iterator<Item = &Said<String>> {
+        let lists =
+            [&self.inputs, &self.outputs, &self.emitter, &self.clamp, &self.coil, &self.com, &self.no, &self.nc];
+        lists.into_iter().flatten()
+    }
+}
+
 impl At {
     /// The place as a notes file writes it.
     #[must_use]
