@@ -5,6 +5,7 @@ mod circuit;
 mod connect;
 mod judge;
 mod netlist;
+mod notes;
 mod review;
 
 pub use judge::finding::{Class, Verdict};
