@@ -53,13 +53,18 @@ const RAIL_WORDS: [&str; 40] = [
     "RAIL", "FUSED", "SAFE", "FIELD", "LOAD", "EXT",
 ];
 
+/// Bytes of a name that may be a rail's or a return's; longer ones are automatic names.
+const LONGEST: usize = 32;
+
 /// Reads a net's name. Letter case is ignored; a sheet's path before the last `/` is not part of the name.
 pub(crate) fn read(name: &str) -> NameSays {
     let name = name.rsplit('/').next().unwrap_or(name);
-    if name.is_empty() || name.len() > 32 {
-        return NameSays::Signal;
-    }
-    let upper = name.to_ascii_uppercase();
+    // A buffer on the stack: a board has a million names, and hardly one of them is a rail's.
+    let mut buffer = [0u8; LONGEST];
+    let Some(upper) = buffer.get_mut(..name.len()).filter(|upper| !upper.is_empty()) else { return NameSays::Signal };
+    upper.copy_from_slice(name.as_bytes());
+    upper.make_ascii_uppercase();
+    let Ok(upper) = std::str::from_utf8(upper) else { return NameSays::Signal };
     let plain = upper.trim_start_matches('!');
     if let Some(kind) = return_kind(plain) {
         return NameSays::Return(kind);
@@ -110,7 +115,7 @@ fn rail(name: &str) -> NameSays {
     let negative = name.starts_with('-');
     let mut volts = None;
     let mut plain_number = false;
-    for word in name.trim_start_matches(['+', '-']).split(['_', '-', '.', ' ']).flat_map(glued) {
+    for word in name.trim_start_matches(['+', '-']).split(['_', '-', ' ']).flat_map(glued) {
         if word.is_empty() || RAIL_WORDS.contains(&word) || word.trim_matches(|c: char| c.is_ascii_digit()).is_empty() {
             // A bare number is a voltage only behind a sign: `+24`, not `N_24`.
             if let (true, None, Ok(value)) = (signed, volts, word.parse::<f64>()) {

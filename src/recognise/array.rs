@@ -6,7 +6,8 @@ use crate::base::span::Span;
 use crate::base::table::Id;
 use crate::circuit::model::{Element, Net};
 use crate::connect::graph::Pin;
-use crate::parts::profile::{PinRole, Profile};
+use crate::parts::pins::Role;
+use crate::parts::profile::Profile;
 
 /// One array. Instances of one-gate parts that share a package are one array with several elements.
 #[derive(Clone, Debug)]
@@ -46,7 +47,7 @@ pub(crate) enum PinsFrom {
 #[derive(Clone, Copy, Debug)]
 pub(crate) struct ArrayPin {
     /// What it does.
-    pub role: PinRole,
+    pub role: Role,
     /// Element and position.
     pub pin: Pin,
     /// Pin number of the package where the map gives one, otherwise position, from 1.
@@ -124,18 +125,18 @@ impl Array {
     }
 
     /// The pins of one role in the order of the netlist.
-    pub(crate) fn pins_of(&self, wanted: impl Fn(PinRole) -> bool) -> impl Iterator<Item = &ArrayPin> {
+    pub(crate) fn pins_of(&self, wanted: impl Fn(Role) -> bool) -> impl Iterator<Item = &ArrayPin> {
         self.pins.iter().filter(move |pin| wanted(pin.role))
     }
 
     /// Its emitter pins.
     pub(crate) fn emitters(&self) -> impl Iterator<Item = &ArrayPin> {
-        self.pins_of(|role| role == PinRole::Emitter)
+        self.pins_of(|role| role == Role::Emitter)
     }
 
     /// Its clamp pins.
     pub(crate) fn clamps(&self) -> impl Iterator<Item = &ArrayPin> {
-        self.pins_of(|role| matches!(role, PinRole::Clamp(_)))
+        self.pins_of(|role| matches!(role, Role::Clamp(_)))
     }
 
     /// The net of its first emitter pin: the reference of every input and output voltage.

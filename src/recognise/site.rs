@@ -70,3 +70,12 @@ impl<'b> ChannelSite<'b> {
         self.channel.output.net
     }
 }
+
+impl Site<'_> {
+    /// Whether the board looks like one sheet of several: no input of the array is driven, and all their nets bear
+    /// given names.
+    pub(crate) fn inputs_lead_elsewhere(&self) -> bool {
+        let inputs = || self.channels.iter().flat_map(|channel| channel.channel.inputs.iter().zip(&channel.drivers));
+        inputs().all(|(_, drivers)| !drivers.any()) && inputs().all(|(pin, _)| self.board.has_given_name(pin.net))
+    }
+}

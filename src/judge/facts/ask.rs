@@ -1,0 +1,83 @@
+//! The questions that gaps ask, each worded in one place, so that equal gaps fold into one question.
+
+use crate::base::table::Id;
+use crate::circuit::model::{Element, Net};
+use crate::judge::fact::{Gap, Question};
+use crate::recognise::board::Board;
+use crate::recognise::load::{Load, LoadKind};
+use crate::recognise::site::Site;
+
+/// What load is it? Asked of a connector as a whole, or of the part or net that it hides behind.
+pub(crate) fn load(board: &Board<'_>, load: &Load) -> Question {
+    if let Some(pin) = load.behind {
+        let refdes = board.circuit.refdes(pin.element);
+        let answer = format!("[[loads]] at = \"{}\", kind = \"…\", supply = \"…\", ohms = …", board.pin_name(pin));
+        return Question { at: refdes, asks: "what load?", answer };
+    }
+    let at = load_name(board, load);
+    let place = match load.supply.net() {
+        Some(net) => format!("net:{}", board.circuit.net_name(net)),
+        None => at.clone(),
+    };
+    Question { answer: format!("[[loads]] at = \"{place}\", kind = \"…\", supply = \"…\""), at, asks: "what feeds it?" }
+}
+
+/// How many ohms has it? Asked of the type where the parts have one, so that one answer serves all of them.
+pub(crate) fn load_ohms(board: &Board<'_>, load_: &Load) -> Question {
+    if load_.behind.is_some() || load_.kind == LoadKind::Unknown {
+        return load(board, load_);
+    }
+    let unknown = load_.elements.iter().find(|&&element| board.winding_ohms(element).is_none()).or(load_.elements.first());
+    match unknown {
+        Some(&element) => ohms(board, element),
+        None => load(board, load_),
+    }
+}
+
+/// How many ohms has this part?
+pub(crate) fn ohms(board: &Board<'_>, element: Id<Element>) -> Question {
+    match board.circuit.part_type(element) {
+        Some(part_type) => Question {
+            at: part_type.to_owned(),
+            asks: "how many ohms?",
+            answer: format!("[types.\"{part_type}\"] ohms = …"),
+        },
+        None => {
+            let refdes = board.circuit.refdes(element);
+            Question { answer: format!("[parts.{refdes}] ohms = …"), at: refdes, asks: "how many ohms?" }
+        }
+    }
+}
+
+/// Where does this net lead, what feeds it?
+pub(crate) fn where_leads(board: &Board<'_>, net: Id<Net>) -> Question {
+    let name = board.circuit.net_name(net);
+    Question { answer: format!("[rails.\"{name}\"] volts = …"), at: name, asks: "what feeds it?" }
+}
+
+/// What drives the inputs of this array?
+pub(crate) fn inputs_of(site: &Site<'_>) -> Question {
+    let example = site.array.channels.iter().flat_map(|channel| &channel.inputs).next();
+    let name = example.map_or(String::new(), |pin| site.board.circuit.net_name(pin.net));
+    Question {
+        at: site.array.refdes.clone(),
+        asks: "what drives its inputs?",
+        answer: format!("[nets.{name}] driver = \"…\""),
+    }
+}
+
+/// The reason that a line which touches `net` was not read, if one was not.
+pub(crate) fn unread(board: &Board<'_>, net: Id<Net>) -> Option<Gap> {
+    board.connectivity.joined(net).into_iter().find_map(|net| {
+        let span = board.circuit.nets[net].unread?;
+        Some(Gap::Reason("a line that touches it was not read".to_owned(), Some(span)))
+    })
+}
+
+/// A load as subjects and messages write it: its elements, or the connector pin that it is behind.
+pub(crate) fn load_name(board: &Board<'_>, load: &Load) -> String {
+    match load.behind {
+        Some(pin) => board.pin_name(pin),
+        None => board.names_of(&load.elements),
+    }
+}

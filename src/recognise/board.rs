@@ -1,0 +1,201 @@
+//! The board as recognition sees it: circuit, connectivity, rails, natures of parts, arrays, and who sits on which net.
+
+use rustc_hash::FxHashMap;
+use smallvec::SmallVec;
+use std::cmp::Ordering;
+
+use crate::base::quantity::Ohms;
+use crate::base::table::Id;
+use crate::circuit::model::{Circuit, Element, Net};
+use crate::connect::graph::{Connectivity, Pin};
+use crate::connect::rails::Rails;
+
+use super::array::Array;
+use super::nature::{Nature, Natures};
+use super::noted::Noted;
+use super::order;
+
+/// Everything below the judgement of one board, joined.
+#[derive(Debug)]
+pub(crate) struct Board<'a> {
+    /// Nets and elements.
+    pub circuit: &'a Circuit,
+    /// Links and pins by net.
+    pub connectivity: &'a Connectivity,
+    /// Rails and returns.
+    pub rails: &'a Rails,
+    /// What each part is.
+    pub natures: &'a Natures,
+    /// What the notes file says of nets, loads and parts.
+    pub noted: &'a Noted<'a>,
+    /// The arrays in order of the netlist.
+    pub arrays: Vec<Array>,
+    outputs: FxHashMap<Id<Net>, SmallVec<[(u32, u32); 1]>>,
+    inputs: FxHashMap<Id<Net>, SmallVec<[(u32, u32); 1]>>,
+    coupled: Vec<Id<Element>>,
+}
+
+/// What a pin does to the net it is on, as far as the part is known.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(crate) enum PinUse {
+    /// It pulls both ways.
+    PushPull,
+    /// It only pulls down.
+    OpenDrain,
+    /// It only watches.
+    Listens,
+    /// It leads off the board.
+    Connector,
+    /// It may drive, watch or neither.
+    Unknown,
+}
+
+impl<'a> Board<'a> {
+    /// Joins what the stages below found.
+    pub(crate) fn new(
+        circuit: &'a Circuit,
+        connectivity: &'a Connectivity,
+        rails: &'a Rails,
+        natures: &'a Natures,
+        noted: &'a Noted<'a>,
+        arrays: Vec<Array>,
+    ) -> Self {
+        let mut outputs: FxHashMap<Id<Net>, SmallVec<[(u32, u32); 1]>> = FxHashMap::default();
+        let mut inputs: FxHashMap<Id<Net>, SmallVec<[(u32, u32); 1]>> = FxHashMap::default();
+        for (number, array) in arrays.iter().enumerate() {
+            for (row, channel) in array.channels.iter().enumerate() {
+                let place = (number as u32, row as u32);
+                outputs.entry(connectivity.copper(channel.output.net)).or_default().push(place);
+                for input in &channel.inputs {
+                    inputs.entry(connectivity.copper(input.net)).or_default().push(place);
+                }
+            }
+        }
+        let mut coupled: Vec<Id<Element>> =
+            circuit.couplings.iter().flat_map(|coupling| [coupling.first, coupling.second]).collect();
+        coupled.sort_unstable();
+        Self { circuit, connectivity, rails, natures, noted, arrays, outputs, inputs, coupled }
+    }
+
+    /// The first channel whose output is on the copper of `net`: array and channel by row.
+    pub(crate) fn channel_at_output(&self, net: Id<Net>) -> Option<(usize, usize)> {
+        self.channels_at_output(net).first().map(|&(array, channel)| (array as usize, channel as usize))
+    }
+
+    /// Every channel whose output is on the copper of `net`: array and channel by row.
+    pub(crate) fn channels_at_output(&self, net: Id<Net>) -> &[(u32, u32)] {
+        self.outputs.get(&self.connectivity.copper(net)).map_or(&[], |channels| channels)
+    }
+
+    /// Every channel with an input on the copper of `net`: array and channel by row.
+    pub(crate) fn channels_at_input(&self, net: Id<Net>) -> &[(u32, u32)] {
+        self.inputs.get(&self.connectivity.copper(net)).map_or(&[], |channels| channels)
+    }
+
+    /// Whether an array's input is on the copper of `net`.
+    pub(crate) fn is_input(&self, net: Id<Net>) -> bool {
+        !self.channels_at_input(net).is_empty()
+    }
+
+    /// Pins at `net` of parts that are blocks to us: connectors, ICs, modules; not arrays, not parts that are links.
+    pub(crate) fn foreign_pins(&self, net: Id<Net>) -> impl Iterator<Item = Pin> + '_ {
+        self.connectivity
+            .pins(net)
+            .iter()
+            .take(MAX_PINS_AT_NET)
+            .copied()
+            .filter(|pin| self.natures.of(pin.element).is_foreign())
+    }
+
+    /// Whether the element is a connector.
+    pub(crate) fn is_connector(&self, element: Id<Element>) -> bool {
+        self.natures.of(element) == Nature::Connector
+    }
+
+    /// Whether a walk that gets to `net` may lead on into something that the netlist does not show.
+    pub(crate) fn may_lead_on(&self, net: Id<Net>) -> bool {
+        self.circuit.nets[net].port || self.foreign_pins(net).next().is_some()
+    }
+
+    /// What `pin` does to its net.
+    pub(crate) fn pin_use(&self, pin: Pin) -> PinUse {
+        if let Some(noted) = self.noted.pin_use(pin) {
+            return noted;
+        }
+        self.natures.pin_use(pin)
+    }
+
+    /// Whether `pin` is known to watch its net.
+    pub(crate) fn watches(&self, pin: Pin) -> bool {
+        self.pin_use(pin) == PinUse::Listens
+    }
+
+    /// Whether nothing but one pin, test points aside, is on the copper of `net`.
+    pub(crate) fn is_lone(&self, net: Id<Net>) -> bool {
+        let nets = self.connectivity.joined(net);
+        let pins = nets
+            .iter()
+            .flat_map(|&net| self.connectivity.pins(net))
+            .filter(|pin| !self.natures.of(pin.element).is_ignored())
+            .take(2)
+            .count();
+        pins <= 1 && nets.len() == 1 && !self.circuit.nets[net].port && !self.circuit.nets[net].global
+    }
+
+    /// Whether the inductor shares flux with another.
+    pub(crate) fn is_coupled(&self, element: Id<Element>) -> bool {
+        self.coupled.binary_search(&element).is_ok()
+    }
+
+    /// Resistance of a winding, filament or other load, from its own line or the notes.
+    pub(crate) fn winding_ohms(&self, element: Id<Element>) -> Option<Ohms> {
+        self.noted
+            .element_ohms(element)
+            .or_else(|| self.circuit.parameter(element, "rser").map(Ohms))
+            .or_else(|| self.circuit.parameter(element, "r").map(Ohms))
+    }
+
+    /// Sorts elements by designator, as a person does.
+    pub(crate) fn sort_naturally(&self, elements: &mut [Id<Element>]) {
+        elements.sort_by(|&a, &b| self.natural(Some(a), Some(b)));
+    }
+
+    /// The order of two elements by designator.
+    pub(crate) fn natural(&self, a: Option<Id<Element>>, b: Option<Id<Element>>) -> Ordering {
+        match (a, b) {
+            (Some(a), Some(b)) => {
+                let text = |id: Id<Element>| self.circuit.names.text(self.circuit.elements[id].refdes);
+                order::natural(text(a), text(b)).then(a.cmp(&b))
+            }
+            (a, b) => a.cmp(&b),
+        }
+    }
+
+    /// The designators of `elements`, joined with `+`.
+    pub(crate) fn names_of(&self, elements: &[Id<Element>]) -> String {
+        let names: Vec<String> = elements.iter().map(|&element| self.circuit.refdes(element)).collect();
+        names.join("+")
+    }
+
+    /// A pin as every output writes it: `J3.1`, with the port's name where the netlist gives one.
+    pub(crate) fn pin_name(&self, pin: Pin) -> String {
+        format!("{}.{}", self.circuit.refdes(pin.element), self.pin_label(pin))
+    }
+
+    /// A pin's name within its part: the port's name, or its number from 1.
+    pub(crate) fn pin_label(&self, pin: Pin) -> String {
+        let ports = self.circuit.elements[pin.element].block.map(|block| &self.circuit.block_types[block].ports);
+        match ports.and_then(|ports| ports.get(usize::from(pin.index))) {
+            Some(&port) if !self.is_connector(pin.element) => self.circuit.names.text(port).to_owned(),
+            _ => (pin.index + 1).to_string(),
+        }
+    }
+
+    /// The net at `pin`.
+    pub(crate) fn net_at(&self, pin: Pin) -> Id<Net> {
+        self.circuit.pins(pin.element)[usize::from(pin.index)]
+    }
+}
+
+/// Pins of one net that are looked at; supply nets have more, and nobody walks there.
+const MAX_PINS_AT_NET: usize = 200;

@@ -1,0 +1,21 @@
+//! Recognition: arrays with pins and channels, loads, drivers, turn-off paths, parallel groups, the return.
+// Lifted when the pipeline is joined.
+#![allow(dead_code)]
+
+pub(crate) mod array;
+pub(crate) mod board;
+pub(crate) mod branch;
+pub(crate) mod cut;
+pub(crate) mod driver;
+pub(crate) mod find;
+pub(crate) mod links;
+pub(crate) mod load;
+pub(crate) mod nature;
+pub(crate) mod noted;
+pub(crate) mod order;
+pub(crate) mod parallel;
+pub(crate) mod pins;
+pub(crate) mod returns;
+pub(crate) mod sanity;
+pub(crate) mod site;
+pub(crate) mod turn_off;

@@ -1,0 +1,173 @@
+//! What the notes file says, found on the board: loads, nets and parts by number instead of by name.
+
+use rustc_hash::FxHashMap;
+
+use crate::base::quantity::Ohms;
+use crate::base::table::Id;
+use crate::circuit::model::{Circuit, Element, Net};
+use crate::connect::graph::Pin;
+use crate::notes::model::{At, DriverNotes, LoadNotes, NetNotes, Notes, PartNotes, TypeNotes};
+use crate::notes::word::DriverKind;
+
+use super::board::PinUse;
+
+/// The notes file's sections, keyed by what they speak of. Without a notes file all maps are empty.
+#[derive(Debug, Default)]
+pub(crate) struct Noted<'n> {
+    nets: FxHashMap<Id<Net>, &'n NetNotes>,
+    parts: FxHashMap<Id<Element>, &'n PartNotes>,
+    types: FxHashMap<Id<Element>, &'n TypeNotes>,
+    net_loads: FxHashMap<Id<Net>, &'n LoadNotes>,
+    pin_loads: FxHashMap<(Id<Element>, u16), &'n LoadNotes>,
+    channel_loads: FxHashMap<(String, u32), &'n LoadNotes>,
+}
+
+/// Names of one board, for looking up what a notes file speaks of. Built only where there is a notes file.
+#[derive(Debug)]
+pub(crate) struct Directory {
+    nets: FxHashMap<String, Id<Net>>,
+    parts: FxHashMap<String, Id<Element>>,
+}
+
+impl Directory {
+    /// Lists the names of `circuit`.
+    pub(crate) fn of(circuit: &Circuit) -> Self {
+        let fold = |name: String| name.to_ascii_lowercase();
+        Self {
+            nets: circuit.nets.ids().map(|id| (fold(circuit.net_name(id)), id)).collect(),
+            parts: circuit.elements.ids().map(|id| (fold(circuit.refdes(id)), id)).collect(),
+        }
+    }
+
+    /// The net of that name, with its sheet's path, whatever the letter case.
+    pub(crate) fn net(&self, name: &str) -> Option<Id<Net>> {
+        self.nets.get(&name.to_ascii_lowercase()).copied()
+    }
+
+    /// The part of that designator, with its sheet's path, whatever the letter case.
+    pub(crate) fn part(&self, refdes: &str) -> Option<Id<Element>> {
+        self.parts.get(&refdes.to_ascii_lowercase()).copied()
+    }
+
+    /// A part's pin by port name, `pinN` or number from 1.
+    pub(crate) fn pin(&self, circuit: &Circuit, refdes: &str, pin: &str) -> Option<Pin> {
+        let element = self.part(refdes)?;
+        find_pin(circuit, element, pin).map(|index| Pin { element, index })
+    }
+}
+
+/// The position of a pin by port name, `pinN` or number from 1.
+pub(crate) fn find_pin(circuit: &Circuit, element: Id<Element>, pin: &str) -> Option<u16> {
+    let ports = circuit.elements[element].block.map_or(&[][..], |block| &circuit.block_types[block].ports);
+    if let Some(at) = ports.iter().position(|&port| circuit.names.text(port).eq_ignore_ascii_case(pin)) {
+        return Some(at as u16);
+    }
+    let number: u16 = pin.strip_prefix("pin").unwrap_or(pin).parse().ok()?;
+    (1..=circuit.elements[element].pin_count).contains(&number).then(|| number - 1)
+}
+
+impl<'n> Noted<'n> {
+    /// Finds on the board what `notes` speaks of. Names that do not exist are told elsewhere and left out here.
+    pub(crate) fn find(circuit: &Circuit, directory: &Directory, notes: &'n Notes) -> Self {
+        let mut noted = Self::default();
+        for net in &notes.nets {
+            if let Some(id) = directory.net(&net.name.value) {
+                noted.nets.insert(id, &net.says);
+            }
+        }
+        for part in &notes.parts {
+            if let Some(id) = directory.part(&part.name.value) {
+                noted.parts.insert(id, &part.says);
+            }
+        }
+        for part_type in &notes.types {
+            let Some(name) = circuit.names.get(&part_type.name.value) else { continue };
+            for (id, element) in circuit.elements.iter() {
+                if element.part_type == Some(name) {
+                    noted.types.insert(id, &part_type.says);
+                }
+            }
+        }
+        for load in &notes.loads {
+            for at in &load.at {
+                noted.place(circuit, directory, &at.value, load);
+            }
+        }
+        noted
+    }
+
+    /// What the notes say of `net`.
+    pub(crate) fn net(&self, net: Id<Net>) -> Option<&'n NetNotes> {
+        self.nets.get(&net).copied()
+    }
+
+    /// What the notes say of a part.
+    pub(crate) fn part(&self, element: Id<Element>) -> Option<&'n PartNotes> {
+        self.parts.get(&element).copied()
+    }
+
+    /// What the notes say of every part of this part's type.
+    pub(crate) fn part_type(&self, element: Id<Element>) -> Option<&'n TypeNotes> {
+        self.types.get(&element).copied()
+    }
+
+    /// A part's resistance: the part's own entry beats its type's.
+    pub(crate) fn element_ohms(&self, element: Id<Element>) -> Option<Ohms> {
+        let own = self.part(element).and_then(|part| part.ohms.as_ref());
+        own.or_else(|| self.part_type(element).and_then(|part_type| part_type.ohms.as_ref())).map(|said| said.value)
+    }
+
+    /// The load that the notes put behind a connector's pin.
+    pub(crate) fn load_at_pin(&self, pin: Pin) -> Option<&'n LoadNotes> {
+        self.pin_loads.get(&(pin.element, pin.index)).copied()
+    }
+
+    /// The load that the notes put on a net.
+    pub(crate) fn load_at_net(&self, net: Id<Net>) -> Option<&'n LoadNotes> {
+        self.net_loads.get(&net).copied()
+    }
+
+    /// The load that the notes put on a channel, by the array's designator and the channel's number.
+    pub(crate) fn load_at_channel(&self, array: &str, channel: u32) -> Option<&'n LoadNotes> {
+        if self.channel_loads.is_empty() {
+            return None;
+        }
+        self.channel_loads.get(&(array.to_ascii_lowercase(), channel)).copied()
+    }
+
+    /// What the notes say a part's pins do to their nets.
+    pub(crate) fn pin_use(&self, pin: Pin) -> Option<PinUse> {
+        let driver = self.part(pin.element)?.driver.as_ref()?;
+        Some(driver_use(&driver.value))
+    }
+
+    fn place(&mut self, circuit: &Circuit, directory: &Directory, at: &At, load: &'n LoadNotes) {
+        match at {
+            At::Net(net) => {
+                if let Some(net) = directory.net(net) {
+                    self.net_loads.insert(net, load);
+                }
+            }
+            At::Channel(array, channel) => {
+                self.channel_loads.insert((array.to_ascii_lowercase(), *channel), load);
+            }
+            At::Pin(part, pin) => {
+                if let Some(pin) = directory.pin(circuit, part, pin) {
+                    self.pin_loads.insert((pin.element, pin.index), load);
+                }
+            }
+        }
+    }
+}
+
+/// What a noted driver does to a net: a logic family pulls both ways unless its kind says otherwise.
+pub(crate) fn driver_use(driver: &DriverNotes) -> PinUse {
+    let kind = match driver {
+        DriverNotes::Family(_) => None,
+        DriverNotes::Levels(levels) => levels.kind.as_ref().map(|said| said.value),
+    };
+    match kind {
+        Some(DriverKind::OpenDrain) => PinUse::OpenDrain,
+        _ => PinUse::PushPull,
+    }
+}
