@@ -3,3 +3,4 @@
 mod base;
 mod circuit;
 mod netlist;
+mod parts;
