@@ -62,6 +62,8 @@ pub(crate) struct NameRow {
     pub suffixes: Vec<String>,
     /// Grade that these names tell, as the numbers of the profile spell it.
     pub grade: Option<String>,
+    /// Package that these names tell by themselves.
+    pub package: Option<String>,
 }
 
 /// Codes of one package.
@@ -136,7 +138,7 @@ impl Head {
                 row.numbers.iter().find_map(|number| Some((number, spelling.core().strip_prefix(number.as_str())?)))?;
             let package =
                 row.suffixes.iter().find_map(|suffix| self.package(after_seam(rest).strip_prefix(suffix.as_str())?))?;
-            Some(Reading { number, grade: row.grade.as_deref(), package })
+            Some(Reading { number, grade: row.grade.as_deref(), package: package.or(row.package.as_deref()) })
         })
     }
 

@@ -37,6 +37,8 @@ pub(crate) struct Output {
     /// Output voltage when on, one entry a document and temperature.
     #[serde(rename = "saturation")]
     pub saturations: Vec<Saturation>,
+    /// Output voltage below the lowest current of the tables: a Darlington never comes near zero.
+    pub low_current: Option<Saturation>,
     /// Off-state current.
     #[serde(rename = "leakage")]
     pub leakages: Vec<Leakage>,

@@ -57,7 +57,7 @@ pub(crate) struct Sourced<T> {
     pub value: T,
     /// Who says so.
     pub from: Source,
-    /// The only grade that it holds for; none: for every grade that has no entry of its own.
+    /// The only grade that it holds for; none: the plain type and every grade that has no entry of its own.
     pub grade: Option<String>,
 }
 
@@ -97,15 +97,16 @@ impl<T> Graded for Sourced<T> {
     }
 }
 
-/// The rows of `rows` that hold for `grade`: a known grade takes its own rows, and where it has none those without a
-/// grade; an unknown grade takes every row, so that what follows is a range.
+/// The rows of `rows` that hold for `grade`: a grade's own rows, and where it has none (or is not known) the rows of the
+/// plain type, which bear no grade. Where every row bears one: all, so that what follows is a range.
 pub(crate) fn of_grade<'a, R: Graded>(rows: &'a [R], grade: Option<&str>) -> impl Iterator<Item = &'a R> {
-    let own = grade.filter(|grade| rows.iter().any(|row| row.grade() == Some(grade))).map(str::to_owned);
-    let known = grade.is_some();
-    rows.iter().filter(move |row| match (&own, row.grade()) {
-        (Some(own), grade) => grade == Some(own),
-        (None, Some(_)) => !known,
-        (None, None) => true,
+    let has = |wanted: Option<&str>| rows.iter().any(|row| row.grade() == wanted);
+    let own = grade.is_some() && has(grade);
+    let plain = has(None);
+    let grade = grade.map(str::to_owned);
+    rows.iter().filter(move |row| match row.grade() {
+        given if own => given == grade.as_deref(),
+        given => !plain || given.is_none(),
     })
 }
 
