@@ -6,6 +6,8 @@ mod connect;
 mod judge;
 mod netlist;
 mod notes;
+mod parts;
+mod recognise;
 mod review;
 
 pub use judge::finding::{Class, Verdict};
