@@ -9,7 +9,7 @@ use hashbrown::{DefaultHashBuilder, HashTable};
 pub(crate) struct Name(u32);
 
 /// Every name of one board, each stored once.
-#[derive(Debug, Default)]
+#[derive(Debug, Default, Clone)]
 pub(crate) struct Names {
     text: String,
     ends: Vec<u32>,

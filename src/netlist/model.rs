@@ -7,7 +7,8 @@
 use crate::base::notice::Notice;
 use crate::base::span::{FileId, Span};
 
-/// A stretch of text between delimiters. An unquoted word never holds blanks.
+/// A stretch of text between delimiters. A plain word never holds blanks. A braced one may run over continuation
+/// lines: read it with `expression::parse`, which passes over line ends, comment lines and the `+`.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub(crate) struct Word {
     /// First byte in the file; quotes and braces are not part of the word.
@@ -83,8 +84,27 @@ pub(crate) enum StatementForm {
     End,
     /// A directive that carries nothing for connectivity (`.tran`, `.options`, …).
     Skipped,
+    /// An encrypted stretch: the insides of the subcircuit that it stands in are not known. No words.
+    Encrypted,
     /// A line that could not be read; a notice says why. Its words, if any, name the nets it may touch.
     Unread,
+}
+
+impl Word {
+    /// The word as written in `text`, the decoded text of its file; empty where it does not fit.
+    pub(crate) fn text(self, text: &str) -> &str {
+        text.get(self.start as usize..self.end()).unwrap_or("")
+    }
+
+    /// One past its last byte.
+    pub(crate) fn end(self) -> usize {
+        self.start as usize + self.len as usize
+    }
+
+    /// Its place in `file`.
+    pub(crate) fn span(self, file: FileId) -> Span {
+        Span { file, start: self.start, len: self.len }
+    }
 }
 
 /// One file, read.

@@ -1,0 +1,521 @@
+//! Copies templates, depth first, into one flat circuit.
+
+use hashbrown::{HashMap, HashSet};
+
+use super::limits::Limits;
+use super::model::{BlockType, Circuit, Coupling, Element, Model, Net, Parameter, Sheet, Value};
+use super::models;
+use super::params::{Env, Evaluator};
+use super::plan::Plan;
+use super::program::{Definition, ModelLine, Program, Scope};
+use super::remarks::{Remarks, Topic};
+use super::template::{Amount, Local, Part, Shared, Tail, Template};
+use super::value;
+use crate::base::names::{Name, Names};
+use crate::base::notice::{Notice, Severity};
+use crate::base::quantity::Ohms;
+use crate::base::sources::Sources;
+use crate::base::span::{FileId, Span};
+use crate::base::table::Id;
+use crate::netlist::model::{PartClass, Reading};
+
+/// A board, flat.
+#[derive(Debug)]
+pub(crate) struct Expanded {
+    /// The elements and nets.
+    pub circuit: Circuit,
+    /// What was noticed on the way.
+    pub notices: Vec<Notice>,
+}
+
+/// What is a board of its own in a program.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(crate) enum Board {
+    /// The elements at top level.
+    Top,
+    /// A definition that nobody instantiates; its ports lead off the board.
+    Definition(Id<Definition>),
+}
+
+/// Row 0 of the nets: node `0`.
+const GROUND: usize = 0;
+
+/// Expands `board`, leaving the definitions in `closed` and the undefined ones as blocks.
+///
+/// # Errors
+/// A limit passed, or a definition that contains itself.
+pub(super) fn expand(
+    program: &Program,
+    sources: &Sources,
+    board: Board,
+    closed: &HashSet<Id<Definition>>,
+    naming: Naming,
+    limits: &Limits,
+) -> Result<Expanded, Box<Notice>> {
+    let scope = match board {
+        Board::Top => Id::new(0),
+        Board::Definition(definition) => program.definitions[definition].scope,
+    };
+    let mut plan = Plan::default();
+    if let Board::Definition(definition) = board {
+        plan.enter(definition);
+    }
+    let row = plan.scope(program, closed, limits, scope)?;
+    let mut expander = Expander {
+        program,
+        closed,
+        plan,
+        names: naming,
+        circuit: Circuit::default(),
+        evaluator: Evaluator::new(program, sources, limits),
+        sources,
+        nets: Vec::new(),
+        globals: HashMap::new(),
+        models: HashMap::new(),
+        blocks: HashMap::new(),
+        gnd: None,
+        gnd_span: None,
+        remarks: Remarks::default(),
+    };
+    expander.reserve(row.elements);
+    expander.board(board, scope)?;
+    Ok(expander.finish())
+}
+
+/// How the circuit gets its names.
+pub(super) enum Naming {
+    /// It takes over all names of the program: one copy, no look-ups.
+    All(Names),
+    /// It takes over the names that it uses: for a small part of a large program.
+    Used(Names, HashMap<Name, Name>),
+}
+
+impl Naming {
+    fn name(&mut self, program: &Program, name: Name) -> Name {
+        match self {
+            Self::All(_) => name,
+            Self::Used(names, map) => *map.entry(name).or_insert_with(|| names.intern(program.names.text(name))),
+        }
+    }
+
+    fn intern(&mut self, text: &str) -> Name {
+        match self {
+            Self::All(names) | Self::Used(names, _) => names.intern(text),
+        }
+    }
+}
+
+struct Expander<'a> {
+    program: &'a Program,
+    sources: &'a Sources,
+    closed: &'a HashSet<Id<Definition>>,
+    plan: Plan,
+    names: Naming,
+    circuit: Circuit,
+    evaluator: Evaluator<'a>,
+    /// The port nets and shared nets of the instances under way, innermost last.
+    nets: Vec<Id<Net>>,
+    globals: HashMap<Name, Id<Net>>,
+    models: HashMap<Id<ModelLine>, Id<Model>>,
+    blocks: HashMap<(Name, Option<Id<Definition>>), Id<BlockType>>,
+    /// What `gnd` is, once it was met.
+    gnd: Option<Id<Net>>,
+    gnd_span: Option<Span>,
+    remarks: Remarks,
+}
+
+/// Where the nets of one instance stand.
+#[derive(Clone, Copy)]
+struct Frame {
+    sheet: Id<Sheet>,
+    /// Its own nets in the circuit: the first one.
+    own: usize,
+    /// Its shared nets in [`Expander::nets`]: the first one.
+    shared: usize,
+    env: Env,
+}
+
+impl<'a> Expander<'a> {
+    fn reserve(&mut self, elements: usize) {
+        // The plan counted them against the limit already.
+        self.circuit.elements.reserve(elements);
+    }
+
+    fn board(&mut self, board: Board, scope: Id<Scope>) -> Result<(), Box<Notice>> {
+        let nowhere = Span { file: FileId(0), start: 0, len: 0 };
+        let top = Id::new(0);
+        let empty = self.names.intern("");
+        self.circuit.sheets.push(Sheet { name: empty, parent: top, span: None });
+        let zero = self.names.intern("0");
+        let ground = Net { name: zero, sheet: top, span: nowhere, global: true, port: false, unread: None };
+        self.circuit.nets.push(ground);
+        let mut env = Env::TOP;
+        if let Board::Definition(definition) = board {
+            let definition = &self.program.definitions[definition];
+            let mut known = HashMap::new();
+            for &port in &definition.ports {
+                let net = match self.fixed(port, definition.span) {
+                    Some(net) => net,
+                    None => *known.entry(port).or_insert_with(|| {
+                        let name = self.names.name(self.program, port);
+                        self.circuit.nets.push(net(name, top, definition.span))
+                    }),
+                };
+                self.circuit.nets[net].port = true;
+                self.nets.push(net);
+            }
+            env = self.evaluator.enter(Env::TOP, definition.scope, Vec::new());
+        }
+        self.scope(scope, top, 0, env)
+    }
+
+    /// The net that `name` means in every scope, if it is node `0` or named by `.global`.
+    fn fixed(&mut self, name: Name, span: Span) -> Option<Id<Net>> {
+        if self.program.names.text(name) == "0" {
+            return Some(Id::new(GROUND));
+        }
+        self.program.globals.contains(&name).then(|| self.global(name, span))
+    }
+
+    fn global(&mut self, name: Name, span: Span) -> Id<Net> {
+        if let Some(&net) = self.globals.get(&name) {
+            return net;
+        }
+        let own = self.names.name(self.program, name);
+        let row = Net { global: true, ..net(own, Id::new(0), span) };
+        let id = self.circuit.nets.push(row);
+        self.globals.insert(name, id);
+        id
+    }
+
+    /// Expands the elements of `scope` onto `sheet`; its ports' nets stand at `ports` in the stack of nets.
+    fn scope(&mut self, scope: Id<Scope>, sheet: Id<Sheet>, ports: usize, env: Env) -> Result<(), Box<Notice>> {
+        let program = self.program;
+        let template: &'a Template = &program.templates[Id::new(scope.index())];
+        let own = self.circuit.nets.len();
+        for &(name, span) in &template.nets {
+            let name = self.names.name(program, name);
+            self.circuit.nets.push(net(name, sheet, span));
+        }
+        let frame = Frame { sheet, own, shared: self.nets.len(), env };
+        for &(shared, span) in &template.shared {
+            let net = match shared {
+                Shared::Port(port) => self.nets.get(ports + port as usize).copied().unwrap_or(Id::new(GROUND)),
+                Shared::Ground => self.ground("0", span),
+                Shared::Gnd => self.gnd(span),
+                Shared::Global(name) => self.global(name, span),
+            };
+            self.nets.push(net);
+        }
+        let mut ids = Vec::new();
+        for part in &template.parts {
+            let element = Id::new(self.circuit.elements.len());
+            match part.definition {
+                Some(id) if part.fitted && !self.closed.contains(&id) => self.instance(template, part, id, frame)?,
+                _ => self.element(template, part, frame)?,
+            }
+            if !template.couplings.is_empty() {
+                ids.push(element);
+            }
+        }
+        for pair in &template.couplings {
+            let factor = match pair.factor {
+                None => None,
+                Some(factor) => self.amount(frame.env, factor)?,
+            };
+            let [element, first, second] = [pair.part, pair.first, pair.second].map(|part| ids[part as usize]);
+            self.circuit.couplings.push(Coupling { element, first, second, factor });
+        }
+        for &(local, span) in &template.unread {
+            let net = self.net(local, frame);
+            self.circuit.nets[net].unread.get_or_insert(span);
+        }
+        self.nets.truncate(frame.shared);
+        Ok(())
+    }
+
+    /// Node 0, which takes the name under which it is met first.
+    fn ground(&mut self, spelling: &str, span: Span) -> Id<Net> {
+        let id = Id::new(GROUND);
+        if self.circuit.nets[id].span.len == 0 {
+            self.circuit.nets[id].span = span;
+            self.circuit.nets[id].name = self.names.intern(spelling);
+        }
+        id
+    }
+
+    fn gnd(&mut self, span: Span) -> Id<Net> {
+        if let Some(net) = self.gnd {
+            return net;
+        }
+        let spelling = self.sources.slice(span);
+        let net = if self.plan.between_grounds.is_some() {
+            let name = self.names.intern(spelling);
+            self.circuit.nets.push(Net { global: true, ..net(name, Id::new(0), span) })
+        } else {
+            self.ground(spelling, span)
+        };
+        self.gnd = Some(net);
+        self.gnd_span = Some(span);
+        net
+    }
+
+    fn net(&self, local: Local, frame: Frame) -> Id<Net> {
+        match local.index() {
+            (index, true) => self.nets[frame.shared + index],
+            (index, false) => Id::new(frame.own + index),
+        }
+    }
+
+    fn instance(
+        &mut self,
+        template: &'a Template,
+        part: &'a Part,
+        id: Id<Definition>,
+        frame: Frame,
+    ) -> Result<(), Box<Notice>> {
+        let program = self.program;
+        let definition = &program.definitions[id];
+        let ports = self.nets.len();
+        self.push_ports(template, part, definition, frame);
+        let name = self.names.name(program, part.refdes);
+        let sheet = self.circuit.sheets.push(Sheet { name, parent: frame.sheet, span: Some(part.span) });
+        self.check_ports(definition, part, ports, frame)?;
+        let waits = self.plan.row(definition.scope).is_some_and(|row| row.waits);
+        let mark = self.evaluator.mark();
+        let env = if waits {
+            let outer = self.evaluator.around(frame.env, program.scopes[definition.scope].parent);
+            let mut overrides = Vec::new();
+            for tail in tails(template, part) {
+                overrides.push((tail.key, self.amount(frame.env, tail.value)?));
+            }
+            self.evaluator.enter(outer, definition.scope, overrides)
+        } else {
+            Env::TOP
+        };
+        self.scope(definition.scope, sheet, ports, env)?;
+        self.evaluator.release(mark);
+        self.nets.truncate(ports);
+        Ok(())
+    }
+
+    /// Puts the outer nets of an instance's ports on the stack, those of left-out optional ports included.
+    fn push_ports(&mut self, template: &Template, part: &Part, definition: &Definition, frame: Frame) {
+        for &local in pins(template, part) {
+            let net = self.net(local, frame);
+            self.nets.push(net);
+        }
+        let required = definition.ports.len() - definition.optional.len();
+        for port in usize::from(part.pin_count)..definition.ports.len() {
+            let default = port.checked_sub(required).and_then(|at| definition.optional.get(at));
+            let net = match default {
+                Some(&name) => match self.fixed(name, definition.span) {
+                    Some(net) => net,
+                    None => self.global(name, definition.span),
+                },
+                None => Id::new(GROUND),
+            };
+            self.nets.push(net);
+        }
+    }
+
+    /// Ports that are one net inside, or a global net, say something about the nets outside.
+    fn check_ports(
+        &mut self,
+        definition: &'a Definition,
+        part: &Part,
+        ports: usize,
+        frame: Frame,
+    ) -> Result<(), Box<Notice>> {
+        for &port in &definition.odd_ports {
+            let port = port as usize;
+            let (name, outer) = (definition.ports[port], self.nets[ports + port]);
+            let net_name = |this: &Self, net: Id<Net>| this.names_text(this.circuit.nets[net].name).to_owned();
+            if let Some(fixed) = self.fixed(name, definition.span) {
+                if fixed != outer {
+                    let topic = if fixed.index() == GROUND { Topic::GroundPortLeads } else { Topic::GlobalPortLeads };
+                    self.remarks.add(topic, part.span, &net_name(self, outer));
+                }
+                continue;
+            }
+            // A second port of the same name: inside, both nets are one.
+            let first = definition.ports.iter().position(|&first| first == name).unwrap_or(port);
+            let inner = self.nets[ports + first];
+            if first == port || inner == outer {
+                continue;
+            }
+            self.remarks.add(Topic::JoinedPorts, part.span, &net_name(self, outer));
+            let refdes = format!("{}:{}", self.program.names.text(part.refdes), self.program.names.text(name));
+            let refdes = self.names.intern(&refdes);
+            let first_pin = self.circuit.pins.len() as u32;
+            self.circuit.pins.extend([inner, outer]);
+            self.circuit.elements.push(Element {
+                refdes,
+                sheet: frame.sheet,
+                span: part.span,
+                class: PartClass::NetTie,
+                reading: Reading::Spice,
+                first_pin,
+                pin_count: 2,
+                fitted: true,
+                value: Value::Ohms(Ohms(0.0)),
+                model: None,
+                part_type: None,
+                block: None,
+            });
+        }
+        Ok(())
+    }
+
+    fn names_text(&self, name: Name) -> &str {
+        match &self.names {
+            Naming::All(names) | Naming::Used(names, _) => names.text(name),
+        }
+    }
+
+    fn element(&mut self, template: &'a Template, part: &'a Part, frame: Frame) -> Result<(), Box<Notice>> {
+        let program = self.program;
+        let first_pin = self.circuit.pins.len();
+        let mut pin_count = part.pin_count;
+        match part.definition {
+            Some(id) if program.definitions[id].ports.len() > usize::from(part.pin_count) => {
+                let definition = &program.definitions[id];
+                let mark = self.nets.len();
+                self.push_ports(template, part, definition, frame);
+                self.circuit.pins.extend(self.nets.drain(mark..));
+                pin_count = (self.circuit.pins.len() - first_pin) as u16;
+            }
+            _ => {
+                for &local in pins(template, part) {
+                    let net = self.net(local, frame);
+                    self.circuit.pins.push(net);
+                }
+            }
+        }
+        let value = match part.formula {
+            None => part.value,
+            Some(formula) => match self.evaluator.value(frame.env, formula)? {
+                Some(number) => value::of_class(part.class, number),
+                None => {
+                    self.remarks.add(Topic::UnknownValue, part.span, program.names.text(part.refdes));
+                    Value::Unknown
+                }
+            },
+        };
+        let model = match part.model {
+            Some(line) => Some(self.model(line)?),
+            None => None,
+        };
+        let block = part.part_type.filter(|_| part.is_by_type()).map(|name| self.block(name, part.definition));
+        let element = Element {
+            refdes: self.names.name(program, part.refdes),
+            sheet: frame.sheet,
+            span: part.span,
+            class: part.class,
+            reading: part.reading,
+            first_pin: first_pin as u32,
+            pin_count,
+            fitted: part.fitted,
+            value,
+            model,
+            part_type: part.part_type.map(|name| self.names.name(program, name)),
+            block,
+        };
+        let id = self.circuit.elements.push(element);
+        if part.tail_count > 0 {
+            self.tails(template, part, frame, id)?;
+        }
+        Ok(())
+    }
+
+    fn tails(
+        &mut self,
+        template: &'a Template,
+        part: &'a Part,
+        frame: Frame,
+        id: Id<Element>,
+    ) -> Result<(), Box<Notice>> {
+        let mut times = None;
+        for tail in tails(template, part) {
+            let Some(value) = self.amount(frame.env, tail.value)? else { continue };
+            if self.program.names.text(tail.key).eq_ignore_ascii_case("m") {
+                times = Some(value);
+            }
+            let key = self.names.name(self.program, tail.key);
+            self.circuit.parameters.push(Parameter { element: id, key, value });
+        }
+        if let Some(times) = times {
+            let value = &mut self.circuit.elements[id].value;
+            *value = value::parallel(*value, times);
+        }
+        Ok(())
+    }
+
+    fn amount(&mut self, env: Env, amount: Amount) -> Result<Option<f64>, Box<Notice>> {
+        match amount {
+            Amount::Known(value) => Ok(Some(value)),
+            Amount::Formula(formula) => self.evaluator.value(env, formula),
+        }
+    }
+
+    fn block(&mut self, name: Name, definition: Option<Id<Definition>>) -> Id<BlockType> {
+        if let Some(&block) = self.blocks.get(&(name, definition)) {
+            return block;
+        }
+        let program = self.program;
+        let known = definition.map(|id| &program.definitions[id]);
+        let ports = known.map_or(&[] as &[Name], |known| &known.ports);
+        let ports = ports.iter().map(|&port| self.names.name(program, port)).collect();
+        let own = self.names.name(program, name);
+        let row = BlockType { name: own, ports, definition: known.map(|known| known.span) };
+        let id = self.circuit.block_types.push(row);
+        self.blocks.insert((name, definition), id);
+        id
+    }
+
+    fn model(&mut self, line: Id<ModelLine>) -> Result<Id<Model>, Box<Notice>> {
+        if let Some(&model) = self.models.get(&line) {
+            return Ok(model);
+        }
+        let mut model = models::read(self.program, self.sources, &mut self.evaluator, line)?;
+        model.name = self.names.name(self.program, model.name);
+        let id = self.circuit.models.push(model);
+        self.models.insert(line, id);
+        Ok(id)
+    }
+
+    fn finish(mut self) -> Expanded {
+        self.circuit.unread_lines = self.plan.unread_lines + self.program.missing_files;
+        let mut remarks = std::mem::take(&mut self.plan.remarks);
+        remarks.merge(&self.remarks);
+        remarks.merge(&self.evaluator.remarks);
+        let program = self.program;
+        let mut notices = remarks.notices(
+            || program.definitions().map(|(_, definition)| program.names.text(definition.name)),
+            || program.models.iter().map(|(_, model)| program.names.text(model.name)),
+        );
+        if let Some(span) = self.gnd_span {
+            notices.push(match self.plan.between_grounds {
+                None => Notice::at(Severity::Note, span, "GND is taken as node 0"),
+                Some(between) => Notice::at(Severity::Note, span, "GND is taken as a net of its own, not as node 0")
+                    .also(between, "this part stands between the two"),
+            });
+        }
+        self.circuit.names = match self.names {
+            Naming::All(names) | Naming::Used(names, _) => names,
+        };
+        Expanded { circuit: self.circuit, notices }
+    }
+}
+
+fn net(name: Name, sheet: Id<Sheet>, span: Span) -> Net {
+    Net { name, sheet, span, global: false, port: false, unread: None }
+}
+
+fn pins<'a>(template: &'a Template, part: &Part) -> &'a [Local] {
+    &template.pins[part.first_pin as usize..part.first_pin as usize + usize::from(part.pin_count)]
+}
+
+fn tails<'a>(template: &'a Template, part: &Part) -> &'a [Tail] {
+    &template.tails[part.first_tail as usize..(part.first_tail + part.tail_count) as usize]
+}

@@ -1,0 +1,126 @@
+//! One scope's elements, checked once and copied for each instance.
+//!
+//! Nets are numbered inside the scope; [`Template::pins`] speaks of them by [`Local`] number. What is the same for
+//! each instance (letters, values, models, which definition an instance means) is settled here; what depends on
+//! parameters waits as a formula.
+
+use super::model::Value;
+use super::program::{Definition, Formula, ModelLine};
+use super::remarks::Remarks;
+use crate::base::names::Name;
+use crate::base::span::Span;
+use crate::base::table::Id;
+use crate::netlist::model::{PartClass, Reading};
+
+/// A net as a scope numbers it: one of its own, or one that it shares with others.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(super) struct Local(u32);
+
+impl Local {
+    const SHARED: u32 = 1 << 31;
+
+    pub(super) fn own(index: usize) -> Self {
+        Self(index as u32)
+    }
+
+    pub(super) fn shared(index: usize) -> Self {
+        Self(index as u32 | Self::SHARED)
+    }
+
+    /// The index, and whether it is one of [`Template::shared`].
+    pub(super) fn index(self) -> (usize, bool) {
+        ((self.0 & !Self::SHARED) as usize, self.0 & Self::SHARED != 0)
+    }
+}
+
+/// A net that a scope shares with others.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(super) enum Shared {
+    /// The port of this index in [`Definition::ports`].
+    Port(u32),
+    /// Node `0`.
+    Ground,
+    /// `gnd`, which is node `0` unless the netlist uses both.
+    Gnd,
+    /// A net that `.global` names.
+    Global(Name),
+}
+
+/// The elements of one scope.
+#[derive(Debug, Default)]
+pub(super) struct Template {
+    /// Its own nets, with the place where each is first named.
+    pub nets: Vec<(Name, Span)>,
+    /// The nets that it shares, with the place where each is first named.
+    pub shared: Vec<(Shared, Span)>,
+    /// The elements in order.
+    pub parts: Vec<Part>,
+    /// The pins of all parts.
+    pub pins: Vec<Local>,
+    /// The `key=value` tails of all parts.
+    pub tails: Vec<Tail>,
+    /// Coupled inductors.
+    pub couplings: Vec<Pair>,
+    /// Nets that a line which was not read names.
+    pub unread: Vec<(Local, Span)>,
+    /// How many lines were not read.
+    pub unread_lines: usize,
+    /// An element between node `0` and `gnd`.
+    pub between_grounds: Option<Span>,
+    /// What there is to say about the lines.
+    pub remarks: Remarks,
+    /// Whether an element's value or tail waits for a parameter.
+    pub waits: bool,
+}
+
+/// One element of a template.
+#[derive(Debug)]
+pub(super) struct Part {
+    pub refdes: Name,
+    pub span: Span,
+    pub class: PartClass,
+    pub reading: Reading,
+    pub fitted: bool,
+    pub pin_count: u16,
+    pub first_pin: u32,
+    pub first_tail: u32,
+    pub tail_count: u32,
+    /// The value, if it is the same in each instance.
+    pub value: Value,
+    /// Otherwise what works it out.
+    pub formula: Option<Id<Formula>>,
+    pub model: Option<Id<ModelLine>>,
+    pub part_type: Option<Name>,
+    /// The definition that it instantiates; its node count fits.
+    pub definition: Option<Id<Definition>>,
+}
+
+impl Part {
+    /// Whether its word says what it is, not a model: such a part has a block type.
+    pub(super) fn is_by_type(&self) -> bool {
+        self.class == PartClass::Block || self.reading != Reading::Spice
+    }
+}
+
+/// A `key=value` tail.
+#[derive(Debug)]
+pub(super) struct Tail {
+    pub key: Name,
+    pub value: Amount,
+}
+
+/// A number, or what works it out.
+#[derive(Clone, Copy, Debug)]
+pub(super) enum Amount {
+    Known(f64),
+    Formula(Id<Formula>),
+}
+
+/// Two coupled inductors, by index into [`Template::parts`].
+#[derive(Debug)]
+pub(super) struct Pair {
+    pub part: u32,
+    pub first: u32,
+    pub second: u32,
+    pub factor: Option<Amount>,
+}
