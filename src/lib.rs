@@ -5,6 +5,7 @@ mod circuit;
 mod judge;
 mod netlist;
 mod notes;
+mod report;
 mod review;
 
 pub use judge::finding::{Class, Verdict};
