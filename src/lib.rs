@@ -9,4 +9,5 @@ mod report;
 mod review;
 
 pub use judge::finding::{Class, Verdict};
-pub use review::Review;
+pub use report::{Format, Look, SinkError, into_sink, manual, write_reviews};
+pub use review::{Options, Review, review};
