@@ -24,6 +24,9 @@ const MARGIN: usize = 24;
 /// Most characters of a line that are shown.
 const WINDOW: usize = 200;
 
+/// Places on one line, each with what stands there.
+type Marks<'a> = Vec<(Span, &'a str)>;
+
 /// One line of a file, cut to what is shown, and the marks in it.
 struct Window {
     file: String,
@@ -43,7 +46,7 @@ pub(crate) fn excerpts(
     indent: &str,
     paint: &dyn Fn(&str) -> String,
 ) {
-    let mut lines: Vec<(String, usize, Vec<(Span, &str)>)> = Vec::new();
+    let mut lines: Vec<(String, usize, Marks<'_>)> = Vec::new();
     for &(span, label) in places.iter().take(PLACES) {
         let place = sources.place(span);
         match lines.iter_mut().find(|(file, line, _)| *file == place.file && *line == place.line) {
@@ -91,9 +94,8 @@ fn window(sources: &Sources, marks: &[(Span, &str)], width: usize) -> Window {
     };
     // Where each byte of the line from `start` went in the cleaned text.
     let mut moved = vec![window.text.len()];
-    let mut shown = 0;
     let mut end = start;
-    for character in line.get(start..).unwrap_or("").chars() {
+    for (shown, character) in line.get(start..).unwrap_or("").chars().enumerate() {
         if shown >= room {
             window.text.push_str(" …");
             break;
@@ -107,7 +109,6 @@ fn window(sources: &Sources, marks: &[(Span, &str)], width: usize) -> Window {
         }
         end += character.len_utf8();
         moved.resize(end - start + 1, window.text.len());
-        shown += 1;
     }
     for (span, label) in marks {
         let at = |byte: usize| {

@@ -7,14 +7,14 @@ const BOARD: &str = "fixtures/greenhouse/valves.cir";
 
 fn lowside(arguments: &[&str]) -> Output {
     let root = PathBuf::from(env!("CARGO_MANIFEST_DIR"));
-    Command::new(env!("CARGO_BIN_EXE_lowside")).args(arguments).current_dir(root).output().unwrap()
+    Command::new(env!("CARGO_BIN_EXE_lowside")).args(arguments).current_dir(root).output().expect("the program starts")
 }
 
 /// Runs and checks the exit status; what came to standard output and standard error.
 #[track_caller]
 fn check(arguments: &[&str], status: i32) -> (String, String) {
     let output = lowside(arguments);
-    let (out, err) = (String::from_utf8(output.stdout).unwrap(), String::from_utf8(output.stderr).unwrap());
+    let [out, err] = [output.stdout, output.stderr].map(|text| String::from_utf8(text).expect("UTF-8"));
     assert_eq!(output.status.code(), Some(status), "{arguments:?}\n{out}\n{err}");
     (out, err)
 }

@@ -28,7 +28,11 @@ fn fences(text: &str, language: &str) -> Vec<String> {
 
 /// Runs the program of this build.
 fn lowside(arguments: &[&str]) -> Output {
-    Command::new(env!("CARGO_BIN_EXE_lowside")).args(arguments).current_dir(root()).output().unwrap()
+    Command::new(env!("CARGO_BIN_EXE_lowside"))
+        .args(arguments)
+        .current_dir(root())
+        .output()
+        .expect("the program starts")
 }
 
 #[test]

@@ -45,7 +45,7 @@ fn walk(folder: &Path) -> Vec<String> {
     let mut names = Vec::new();
     let mut folders = vec![folder.to_owned()];
     while let Some(folder) = folders.pop() {
-        for entry in std::fs::read_dir(folder).unwrap().flatten() {
+        for entry in std::fs::read_dir(folder).expect("a folder of the sources").flatten() {
             let path = entry.path();
             if path.is_dir() {
                 if !path.ends_with("target") && !path.ends_with(".git") {
