@@ -87,7 +87,7 @@ THE NOTES FILE (TOML) says what a netlist cannot:
     return = "PGND"              # also may_be_off, can_sink
 
     [nets.RELAY_EN]
-    driver = "cmos-3v3"          # a logic family, or { high_v = 2.9, low_v = 0.2, source_a = 0.004 }
+    driver = "cmos-3v3"          # a logic family, or { high_v = 2.9, low_v = 0.2 }
     reset = "high-z"             # low, high, high-z, pull-up
                                  # also role, receiver, volts_ac, pull_up_ohms, reference, shift_v,
                                  # withstand_v, inject_a

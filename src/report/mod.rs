@@ -6,6 +6,7 @@ use std::io::{self, Write};
 
 use crate::review::Review;
 
+pub(crate) mod cards;
 mod carets;
 pub(crate) mod clean;
 mod fold;
@@ -13,6 +14,7 @@ mod json;
 mod look;
 mod manual;
 mod open;
+pub(crate) mod parts;
 mod sink;
 mod text;
 mod wrap;
@@ -25,6 +27,16 @@ mod tests;
 pub use look::Look;
 pub use manual::manual;
 pub use sink::{SinkError, into_sink};
+
+/// A JSON document that holds one list under `key`.
+fn write_json<T: serde::Serialize>(out: &mut dyn Write, key: &'static str, list: &T) -> io::Result<()> {
+    let mut document = std::collections::BTreeMap::new();
+    document.insert("lowside", serde_json::Value::from(env!("CARGO_PKG_VERSION")));
+    document.insert("schema", serde_json::Value::from(json::SCHEMA));
+    document.insert(key, serde_json::to_value(list).map_err(io::Error::from)?);
+    serde_json::to_writer_pretty(&mut *out, &document).map_err(io::Error::from)?;
+    out.write_all(b"\n")
+}
 
 /// The form that a result is written in.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]

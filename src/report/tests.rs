@@ -1,9 +1,12 @@
 //! What a review looks like as text.
 
+use super::cards::{self, CardPage};
 use super::clean::hidden;
+use super::parts::{self, PartNumber, PartPage};
 use super::sample::{bad, finding, good};
 use super::{Format, Look, write_reviews};
 use crate::base::notice::{Notice, Severity};
+use crate::judge::fact::{FactDef, Kind, Scope};
 use crate::judge::finding::Class;
 use crate::review::Review;
 
@@ -107,4 +110,101 @@ fn a_board_without_judgements_says_so() {
     valves.cir: no sink array found
     Nothing was judged.
     ");
+}
+
+fn printed(write: impl FnOnce(&mut dyn std::io::Write) -> std::io::Result<()>) -> String {
+    let mut out = Vec::new();
+    write(&mut out).unwrap();
+    String::from_utf8(out).unwrap()
+}
+
+#[test]
+fn a_card_is_listed_on_a_line_and_written_whole_on_its_page() {
+    let sources = ["common practice".to_owned()];
+    let card = CardPage {
+        name: "clamp-on-return",
+        class: "damage",
+        scope: "array",
+        title: "The clamp pin must not be on the return",
+        applies: "array.inductive",
+        holds: "!array.clamp_on_return",
+        class_when: vec![("hazard", "array.safety")],
+        limits: vec![("ohms", 10.0)],
+        why: "The clamp diode conducts as soon as the output rises.",
+        remedy: "Tie the clamp pin to the supply of the loads.",
+        caution: Some("Switch off first."),
+        sources: &sources,
+        overlaps: &[],
+    };
+    let list = printed(|out| cards::write_list(out, std::slice::from_ref(&card), Format::Text, Look::default()));
+    assert_eq!(list, "clamp-on-return  damage  The clamp pin must not be on the return\n");
+    insta::assert_snapshot!(printed(|out| cards::write_page(out, &card, Format::Text, Look::default())), @r"
+    clamp-on-return (damage, judged for each array)
+      The clamp pin must not be on the return
+
+      Concerns a subject when: array.inductive
+
+      Holds when: !array.clamp_on_return
+
+      Becomes hazard when: array.safety
+
+      Limit: ohms = 10
+
+      Why: The clamp diode conducts as soon as the output rises.
+
+      Change: Tie the clamp pin to the supply of the loads.
+
+      Caution: Switch off first.
+
+      Sources: common practice
+    ");
+    let json = printed(|out| cards::write_page(out, &card, Format::Json, Look::default()));
+    let json: serde_json::Value = serde_json::from_str(&json).unwrap();
+    assert_eq!(json["cards"][0]["class_when"][0][1], "array.safety");
+}
+
+#[test]
+fn a_fact_is_listed_with_its_unit_and_meaning() {
+    let facts = [
+        FactDef { scope: Scope::Load, field: "inductive", kind: Kind::Flag, sentence: "It stores energy." },
+        FactDef { scope: Scope::Load, field: "supply_volts", kind: Kind::Number("V"), sentence: "Its supply." },
+    ];
+    let text = printed(|out| cards::write_facts(out, facts.iter(), Format::Text, Look::default()));
+    assert_eq!(
+        text,
+        "load.inductive     true or false  It stores energy.\nload.supply_volts  V              Its supply.\n"
+    );
+    let json = printed(|out| cards::write_facts(out, facts.iter(), Format::Json, Look::default()));
+    let json: serde_json::Value = serde_json::from_str(&json).unwrap();
+    assert_eq!((&json["facts"][0]["unit"], &json["facts"][1]["unit"]), (&serde_json::Value::Null, &"V".into()));
+}
+
+#[test]
+fn a_part_shows_each_number_with_its_source() {
+    let part = PartPage {
+        name: "x2003".to_owned(),
+        title: "seven channels, 5 V inputs".to_owned(),
+        types: vec!["2003A".to_owned()],
+        channels: 7,
+        pins: vec!["in 1".to_owned(), "in 2".to_owned()],
+        numbers: vec![PartNumber {
+            name: "collector current".to_owned(),
+            value: Some(0.5),
+            unit: "A",
+            shown: "500 mA".to_owned(),
+            source: "from memory".to_owned(),
+        }],
+        remarks: Vec::new(),
+    };
+    insta::assert_snapshot!(printed(|out| parts::write_page(out, &part, Format::Text, Look::default())), @r"
+    x2003 (7 channels)
+      seven channels, 5 V inputs
+      Types: 2003A
+      Pins: 1 in 1, 2 in 2
+
+    collector current  500 mA  from memory
+    ");
+    let json = printed(|out| parts::write_list(out, &[part], Format::Json, Look::default()));
+    let json: serde_json::Value = serde_json::from_str(&json).unwrap();
+    assert_eq!(json["parts"][0]["numbers"][0]["value"], 0.5);
 }

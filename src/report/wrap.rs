@@ -1,5 +1,9 @@
 //! Words in lines: folding a paragraph at a width, with an indent.
 
+use std::borrow::Cow;
+
+use super::clean::shown;
+
 /// Appends `text` in lines of at most `width` characters, the first after `first`, the others after `rest`. Words
 /// longer than a line stay whole: a name that is torn apart cannot be searched for.
 pub(crate) fn paragraph(out: &mut String, text: &str, width: usize, first: &str, rest: &str) {
@@ -23,6 +27,22 @@ pub(crate) fn paragraph(out: &mut String, text: &str, width: usize, first: &str,
         fresh = false;
     }
     out.push('\n');
+}
+
+/// Rows of three cells: the first two as wide as their widest, the last folded beside them at `width`.
+#[must_use]
+pub(crate) fn columns(rows: &[[&str; 3]], width: usize) -> String {
+    let cells: Vec<[Cow<'_, str>; 3]> = rows.iter().map(|row| row.map(shown)).collect();
+    let first = cells.iter().map(|[first, _, _]| first.chars().count()).max().unwrap_or(0);
+    let second = cells.iter().map(|[_, second, _]| second.chars().count()).max().unwrap_or(0);
+    let mut text = String::new();
+    for [name, word, rest] in &cells {
+        let head = format!("{name:first$}  {word:second$}  ");
+        // Where the heads take most of the line, the rest goes under them.
+        let indent = if head.chars().count() * 2 > width { 4 } else { head.chars().count() };
+        paragraph(&mut text, rest, width, &head, &" ".repeat(indent));
+    }
+    text
 }
 
 /// `words` joined by commas; past `most` the rest is counted.
@@ -59,6 +79,13 @@ mod tests {
         check("tie the clamp pin", 9, "* tie the\n  clamp\n  pin\n");
         check("a Net-(U1-Pad3) b", 6, "* a\n  Net-(U1-Pad3)\n  b\n");
         check("  ", 9, "* \n");
+    }
+
+    #[test]
+    fn columns_align_and_their_last_cell_folds() {
+        let rows = [["a", "damage", "one two three"], ["long", "-", "x\u{1b}"]];
+        assert_eq!(columns(&rows, 80), "a     damage  one two three\nlong  -       x\\u{1b}\n");
+        assert_eq!(columns(&rows, 22), "a     damage  one two\n    three\nlong  -       x\\u{1b}\n");
     }
 
     #[test]
