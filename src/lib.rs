@@ -8,7 +8,9 @@ mod netlist;
 mod notes;
 mod parts;
 mod recognise;
+mod report;
 mod review;
 
 pub use judge::finding::{Class, Verdict};
-pub use review::Review;
+pub use report::{Format, Look, SinkError, into_sink, manual, write_reviews};
+pub use review::{Options, Review, review};

@@ -1,8 +1,19 @@
 //! The pipeline: one line a stage, every stage's problems gathered.
 
-use crate::base::notice::Notice;
+use std::path::{Path, PathBuf};
+
+use crate::base::notice::{Notice, Severity};
 use crate::base::sources::Sources;
-use crate::judge::finding::Judged;
+use crate::judge::finding::{Class, Judged, Verdict};
+
+/// What a review may rest on beside the netlist.
+#[derive(Clone, Debug, Default)]
+pub struct Options {
+    /// The notes file; where there is none, `BOARD.notes.toml` beside `BOARD.cir`, if it is there.
+    pub notes: Option<PathBuf>,
+    /// Folders that a netlist may include files from, beside its own.
+    pub allow_include: Vec<PathBuf>,
+}
 
 /// One board, read and judged.
 #[derive(Debug)]
@@ -27,6 +38,42 @@ pub struct Review {
     pub(crate) assumptions: Vec<(String, String)>,
     /// The input's text, for carets.
     pub(crate) sources: Sources,
+}
+
+/// Reads the netlist and judges it; `-` is standard input. What goes wrong stands in the review.
+#[must_use]
+pub fn review(netlist: &Path, options: &Options) -> Review {
+    let name = netlist.to_string_lossy().into_owned();
+    let error = std::fs::read(netlist)
+        .err()
+        .map(|cause| Notice::general(Severity::Error, format!("{name} could not be read: {cause}")));
+    Review {
+        netlist: name,
+        notes: options.notes.as_ref().map(|notes| notes.to_string_lossy().into_owned()),
+        error,
+        read_in_part: false,
+        problems: Vec::new(),
+        arrays: Vec::new(),
+        judged: Judged::default(),
+        not_judged: Vec::new(),
+        assumptions: Vec::new(),
+        sources: Sources::default(),
+    }
+}
+
+impl Review {
+    /// Whether something at or above `class` is broken; with `unproven` also whether something there is unproven.
+    #[must_use]
+    pub fn stops(&self, class: Class, unproven: bool) -> bool {
+        let counts = |verdict| verdict == Verdict::Broken || (unproven && verdict == Verdict::Unproven);
+        self.judged.findings.iter().any(|finding| finding.class <= class && counts(finding.verdict))
+    }
+
+    /// Whether the board could not be used; with `strict` also whether it was only read in part.
+    #[must_use]
+    pub fn unusable(&self, strict: bool) -> bool {
+        self.error.is_some() || (strict && self.read_in_part)
+    }
 }
 
 /// Something the review says nothing about.

@@ -84,9 +84,9 @@ impl Reader {
     /// All that was gathered, in the order of the file.
     pub(super) fn finish(mut self) -> Vec<Notice> {
         self.problems.sort_by_key(|notice| notice.place);
-        // The first problem at a place is the cause, what follows from it is not told.
-        let start = |notice: &Notice| notice.place.map(|place| place.start);
-        self.problems.dedup_by(|later, first| start(later) == start(first));
+        // What the TOML parser told of a place is the cause; that no value came of it is not told again.
+        self.problems
+            .dedup_by(|later, first| later.place == first.place && later.place.is_some_and(|place| place.len == 0));
         if self.left_out > 0 {
             let message = format!("{} more problems of the notes file are not shown", self.left_out);
             self.problems.push(Notice::general(Severity::Error, message));

@@ -1,1 +1,3 @@
-//! End to end.
+//! End to end: the program itself, over `fixtures/`.
+
+mod reports;
