@@ -2,3 +2,4 @@
 
 pub(crate) mod fact;
 pub(crate) mod finding;
+pub(crate) mod facts;

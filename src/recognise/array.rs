@@ -11,7 +11,7 @@ use crate::parts::profile::Profile;
 
 /// One array. Instances of one-gate parts that share a package are one array with several elements.
 #[derive(Clone, Debug)]
-pub(crate) struct Array {
+pub(crate) struct Array<'p> {
     /// Designator with its sheet's path.
     pub refdes: String,
     /// Its type as the netlist spells it.
@@ -19,7 +19,7 @@ pub(crate) struct Array {
     /// Its elements in order.
     pub elements: SmallVec<[Id<Element>; 1]>,
     /// What is known of the part.
-    pub profile: &'static Profile,
+    pub profile: &'p Profile,
     /// How its pins' roles are known.
     pub pins_from: PinsFrom,
     /// Every pin whose role is known, in the order of the netlist.
@@ -118,7 +118,7 @@ impl PinsFrom {
     }
 }
 
-impl Array {
+impl Array<'_> {
     /// The clamp pin that serves `channel`, if the part has one and the instance shows it.
     pub(crate) fn clamp_of(&self, channel: &Channel) -> Option<&ArrayPin> {
         channel.clamp.map(|row| &self.pins[row])

@@ -14,6 +14,7 @@ use super::array::Array;
 use super::nature::{Nature, Natures};
 use super::noted::Noted;
 use super::order;
+use super::sanity::is_given;
 
 /// Everything below the judgement of one board, joined.
 #[derive(Debug)]
@@ -25,11 +26,11 @@ pub(crate) struct Board<'a> {
     /// Rails and returns.
     pub rails: &'a Rails,
     /// What each part is.
-    pub natures: &'a Natures,
+    pub natures: &'a Natures<'a>,
     /// What the notes file says of nets, loads and parts.
     pub noted: &'a Noted<'a>,
     /// The arrays in order of the netlist.
-    pub arrays: Vec<Array>,
+    pub arrays: Vec<Array<'a>>,
     outputs: FxHashMap<Id<Net>, SmallVec<[(u32, u32); 1]>>,
     inputs: FxHashMap<Id<Net>, SmallVec<[(u32, u32); 1]>>,
     coupled: Vec<Id<Element>>,
@@ -56,9 +57,9 @@ impl<'a> Board<'a> {
         circuit: &'a Circuit,
         connectivity: &'a Connectivity,
         rails: &'a Rails,
-        natures: &'a Natures,
+        natures: &'a Natures<'a>,
         noted: &'a Noted<'a>,
-        arrays: Vec<Array>,
+        arrays: Vec<Array<'a>>,
     ) -> Self {
         let mut outputs: FxHashMap<Id<Net>, SmallVec<[(u32, u32); 1]>> = FxHashMap::default();
         let mut inputs: FxHashMap<Id<Net>, SmallVec<[(u32, u32); 1]>> = FxHashMap::default();
@@ -104,12 +105,12 @@ impl<'a> Board<'a> {
             .iter()
             .take(MAX_PINS_AT_NET)
             .copied()
-            .filter(|pin| self.natures.of(pin.element).is_foreign())
+            .filter(|pin| self.natures.kind(pin.element).is_foreign())
     }
 
     /// Whether the element is a connector.
     pub(crate) fn is_connector(&self, element: Id<Element>) -> bool {
-        self.natures.of(element) == Nature::Connector
+        matches!(self.natures.of(element), Nature::Connector)
     }
 
     /// Whether a walk that gets to `net` may lead on into something that the netlist does not show.
@@ -122,7 +123,7 @@ impl<'a> Board<'a> {
         if let Some(noted) = self.noted.pin_use(pin) {
             return noted;
         }
-        self.natures.pin_use(pin)
+        self.natures.pin_use(self.circuit, pin)
     }
 
     /// Whether `pin` is known to watch its net.
@@ -136,7 +137,7 @@ impl<'a> Board<'a> {
         let pins = nets
             .iter()
             .flat_map(|&net| self.connectivity.pins(net))
-            .filter(|pin| !self.natures.of(pin.element).is_ignored())
+            .filter(|pin| !matches!(self.natures.of(pin.element), Nature::Ignored))
             .take(2)
             .count();
         pins <= 1 && nets.len() == 1 && !self.circuit.nets[net].port && !self.circuit.nets[net].global
@@ -189,6 +190,11 @@ impl<'a> Board<'a> {
             Some(&port) if !self.is_connector(pin.element) => self.circuit.names.text(port).to_owned(),
             _ => (pin.index + 1).to_string(),
         }
+    }
+
+    /// Whether a person gave the net its name, not an exporter.
+    pub(crate) fn has_given_name(&self, net: Id<Net>) -> bool {
+        is_given(self.circuit.names.text(self.circuit.nets[net].name))
     }
 
     /// The net at `pin`.

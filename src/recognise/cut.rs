@@ -21,7 +21,7 @@ pub(crate) struct Cut {
 }
 
 /// The part nearest to the coil that can open and would leave it without a way; one that leaves a way where none is worse.
-pub(crate) fn cut_of(board: &Board<'_>, array: &Array, channel: &Channel, hanging: &Hanging, load: &Load, ways: &Ways) -> Option<Cut> {
+pub(crate) fn cut_of(board: &Board<'_>, array: &Array<'_>, channel: &Channel, hanging: &Hanging, load: &Load, ways: &Ways) -> Option<Cut> {
     let output = channel.output.net;
     let mut cuts: Vec<Cut> = Vec::new();
     for &row in &load.branches {
@@ -47,7 +47,7 @@ pub(crate) fn cut_of(board: &Board<'_>, array: &Array, channel: &Channel, hangin
 }
 
 /// Whether a way ends on the coil's side of the cut, or a capacitor there takes the energy.
-fn survives(board: &Board<'_>, array: &Array, channel: &Channel, ways: &Ways, inner: &[Id<Net>]) -> bool {
+fn survives(board: &Board<'_>, array: &Array<'_>, channel: &Channel, ways: &Ways, inner: &[Id<Net>]) -> bool {
     let within = |net: Id<Net>| inner.iter().any(|&other| board.connectivity.same(other, net));
     let by_way = ways.list.iter().any(|way| way.target == Target::OtherEnd && within(way.path.end));
     let by_clamp = array.clamp_of(channel).is_some_and(|pin| within(pin.net));

@@ -17,27 +17,29 @@ use super::sanity::Ground;
 
 /// What was found.
 #[derive(Debug, Default)]
-pub(crate) struct Found {
+pub(crate) struct Found<'p> {
     /// The arrays, in the order of the netlist.
-    pub arrays: Vec<Array>,
+    pub arrays: Vec<Array<'p>>,
     /// Instances that are arrays by type and whose pins have no roles.
-    pub without_roles: Vec<(Id<Element>, &'static Profile, NoRoles)>,
+    pub without_roles: Vec<(Id<Element>, &'p Profile, NoRoles)>,
 }
 
 /// One instance before gates of a package are put together.
-struct Instance {
+struct Instance<'p> {
     element: Id<Element>,
-    profile: &'static Profile,
+    profile: &'p Profile,
     roles: PinRoles,
 }
 
 /// Finds the arrays of a board.
-pub(crate) fn find(ground: &Ground<'_>, natures: &Natures, noted: &Noted<'_>) -> Found {
+pub(crate) fn find<'p>(ground: &Ground<'_, 'p>, noted: &Noted<'_>) -> Found<'p> {
+    let natures = ground.natures;
     let circuit = ground.circuit;
     let mut found = Found::default();
     let mut packages: FxHashMap<(Id<Sheet>, Option<Name>, String), usize> = FxHashMap::default();
     for (element, row) in circuit.elements.iter() {
-        let Nature::Array(profile) = natures.of(element) else { continue };
+        let Nature::Array(hit) = natures.of(element) else { continue };
+        let profile = hit.profile;
         if !row.fitted || row.pin_count == 0 {
             continue;
         }
@@ -53,7 +55,8 @@ pub(crate) fn find(ground: &Ground<'_>, natures: &Natures, noted: &Noted<'_>) ->
             // U1A … U1F of one type are the gates of one package.
             let key = (row.sheet, row.part_type, package_of(circuit.names.text(row.refdes)).to_ascii_uppercase());
             if let Some(&at) = packages.get(&key) {
-                add_gate(&mut found.arrays[at], &instance);
+                let gate = gate_of(circuit.names.text(row.refdes)).unwrap_or(found.arrays[at].channels.len() as u32);
+                add_gate(&mut found.arrays[at], &instance, gate);
                 continue;
             }
             packages.insert(key, found.arrays.len());
@@ -61,6 +64,7 @@ pub(crate) fn find(ground: &Ground<'_>, natures: &Natures, noted: &Noted<'_>) ->
         found.arrays.push(array_of(ground, instance));
     }
     for array in &mut found.arrays {
+        array.channels.sort_by_key(|channel| channel.index);
         if array.elements.len() > 1 {
             let refdes = array.refdes.clone();
             array.refdes = package_of(&refdes).to_owned();
@@ -69,11 +73,13 @@ pub(crate) fn find(ground: &Ground<'_>, natures: &Natures, noted: &Noted<'_>) ->
     found
 }
 
-fn array_of(ground: &Ground<'_>, instance: Instance) -> Array {
+fn array_of<'p>(ground: &Ground<'_, 'p>, instance: Instance<'p>) -> Array<'p> {
     let circuit = ground.circuit;
     let Instance { element, profile, roles } = instance;
     let sanity = if roles.from == PinsFrom::Notes { Sanity::Passes } else { ground.test(&roles.pins) };
-    let channels = channels_of(profile, &roles.pins, 0, 0);
+    // `U1C` alone is still the third gate of its package.
+    let gate = if roles.cell { gate_of(circuit.names.text(circuit.elements[element].refdes)).unwrap_or(0) } else { 0 };
+    let channels = channels_of(profile, &roles.pins, gate, 0);
     Array {
         refdes: circuit.refdes(element),
         part_type: circuit.part_type(element).unwrap_or_default().to_owned(),
@@ -87,9 +93,9 @@ fn array_of(ground: &Ground<'_>, instance: Instance) -> Array {
     }
 }
 
-fn add_gate(array: &mut Array, gate: &Instance) {
+fn add_gate(array: &mut Array<'_>, gate: &Instance<'_>, number: u32) {
     let first_pin = array.pins.len();
-    let channels = channels_of(array.profile, &gate.roles.pins, array.channels.len() as u32, first_pin);
+    let channels = channels_of(array.profile, &gate.roles.pins, number, first_pin);
     array.pins.extend(gate.roles.pins.iter().copied());
     array.channels.extend(channels);
     array.elements.push(gate.element);
@@ -120,6 +126,12 @@ fn channels_of(profile: &Profile, pins: &[ArrayPin], before: u32, first_pin: usi
 fn lone_clamp(pins: &[ArrayPin]) -> Option<usize> {
     let mut rows = pins.iter().enumerate().filter(|(_, pin)| matches!(pin.role, Role::Clamp(_))).map(|(row, _)| row);
     rows.next().filter(|_| rows.next().is_none())
+}
+
+/// The gate's number from 0, by the letter at the end of a designator like `U1C`.
+fn gate_of(refdes: &str) -> Option<u32> {
+    let letter = refdes.bytes().last()?.to_ascii_uppercase();
+    (package_of(refdes).len() < refdes.len()).then(|| u32::from(letter - b'A'))
 }
 
 /// The designator without the letter that tells the gate: `U1` of `U1A`.

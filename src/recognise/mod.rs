@@ -12,6 +12,7 @@ pub(crate) mod links;
 pub(crate) mod load;
 pub(crate) mod nature;
 pub(crate) mod noted;
+pub(crate) mod off_board;
 pub(crate) mod order;
 pub(crate) mod parallel;
 pub(crate) mod pins;

@@ -17,9 +17,18 @@ pub(crate) struct Noted<'n> {
     nets: FxHashMap<Id<Net>, &'n NetNotes>,
     parts: FxHashMap<Id<Element>, &'n PartNotes>,
     types: FxHashMap<Id<Element>, &'n TypeNotes>,
-    net_loads: FxHashMap<Id<Net>, &'n LoadNotes>,
-    pin_loads: FxHashMap<(Id<Element>, u16), &'n LoadNotes>,
-    channel_loads: FxHashMap<(String, u32), &'n LoadNotes>,
+    net_loads: FxHashMap<Id<Net>, NotedLoad<'n>>,
+    pin_loads: FxHashMap<(Id<Element>, u16), NotedLoad<'n>>,
+    channel_loads: FxHashMap<(String, u32), NotedLoad<'n>>,
+}
+
+/// A load of the notes file, with the net that it says feeds it.
+#[derive(Clone, Copy, Debug)]
+pub(crate) struct NotedLoad<'n> {
+    /// The entry.
+    pub says: &'n LoadNotes,
+    /// Its supply on the board.
+    pub supply: Option<Id<Net>>,
 }
 
 /// Names of one board, for looking up what a notes file speaks of. Built only where there is a notes file.
@@ -89,8 +98,9 @@ impl<'n> Noted<'n> {
             }
         }
         for load in &notes.loads {
+            let supply = load.supply.as_ref().and_then(|said| directory.net(&said.value));
             for at in &load.at {
-                noted.place(circuit, directory, &at.value, load);
+                noted.place(circuit, directory, &at.value, NotedLoad { says: load, supply });
             }
         }
         noted
@@ -118,21 +128,26 @@ impl<'n> Noted<'n> {
     }
 
     /// The load that the notes put behind a connector's pin.
-    pub(crate) fn load_at_pin(&self, pin: Pin) -> Option<&'n LoadNotes> {
-        self.pin_loads.get(&(pin.element, pin.index)).copied()
+    pub(crate) fn load_at_pin(&self, pin: Pin) -> Option<&NotedLoad<'n>> {
+        self.pin_loads.get(&(pin.element, pin.index))
     }
 
     /// The load that the notes put on a net.
-    pub(crate) fn load_at_net(&self, net: Id<Net>) -> Option<&'n LoadNotes> {
-        self.net_loads.get(&net).copied()
+    pub(crate) fn load_at_net(&self, net: Id<Net>) -> Option<&NotedLoad<'n>> {
+        self.net_loads.get(&net)
     }
 
     /// The load that the notes put on a channel, by the array's designator and the channel's number.
-    pub(crate) fn load_at_channel(&self, array: &str, channel: u32) -> Option<&'n LoadNotes> {
+    pub(crate) fn load_at_channel(&self, array: &str, channel: u32) -> Option<&NotedLoad<'n>> {
         if self.channel_loads.is_empty() {
             return None;
         }
-        self.channel_loads.get(&(array.to_ascii_lowercase(), channel)).copied()
+        self.channel_loads.get(&(array.to_ascii_lowercase(), channel))
+    }
+
+    /// Whether the notes say that the part is not fitted.
+    pub(crate) fn is_left_out(&self, element: Id<Element>) -> bool {
+        self.part(element).and_then(|part| part.fitted.as_ref()).is_some_and(|said| !said.value)
     }
 
     /// What the notes say a part's pins do to their nets.
@@ -141,7 +156,7 @@ impl<'n> Noted<'n> {
         Some(driver_use(&driver.value))
     }
 
-    fn place(&mut self, circuit: &Circuit, directory: &Directory, at: &At, load: &'n LoadNotes) {
+    fn place(&mut self, circuit: &Circuit, directory: &Directory, at: &At, load: NotedLoad<'n>) {
         match at {
             At::Net(net) => {
                 if let Some(net) = directory.net(net) {

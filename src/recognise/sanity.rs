@@ -13,7 +13,7 @@ use super::array::{ArrayPin, Sanity, WrongMap};
 use super::nature::Natures;
 
 /// What the test looks at.
-pub(crate) struct Ground<'a> {
+pub(crate) struct Ground<'a, 'p> {
     /// Nets.
     pub circuit: &'a Circuit,
     /// Links.
@@ -21,7 +21,7 @@ pub(crate) struct Ground<'a> {
     /// Rails and returns.
     pub rails: &'a Rails,
     /// What parts are.
-    pub natures: &'a Natures,
+    pub natures: &'a Natures<'p>,
 }
 
 /// What a net looks like from a pin.
@@ -34,7 +34,7 @@ enum Looks {
     Open,
 }
 
-impl Ground<'_> {
+impl Ground<'_, '_> {
     /// Tests `pins`.
     ///
     /// It passes when an emitter pin is on a return and no clamp pin is, or when only weaker signs exist and none
@@ -65,10 +65,7 @@ impl Ground<'_> {
         if self.shifted(pins) {
             return Sanity::Explained(WrongMap::Shifted);
         }
-        match emitter_looks {
-            Looks::Open => Sanity::Undecided,
-            _ => Sanity::Undecided,
-        }
+        Sanity::Undecided
     }
 
     /// Inputs that look like outputs and outputs that look like inputs, all of them; or numbers in net names that pair
@@ -147,7 +144,7 @@ impl Ground<'_> {
         if self.connectivity.hops(net).any(|hop| self.connectivity.link(hop.link).kind.is_load()) {
             return Looks::Loaded;
         }
-        if self.connectivity.pins(net).iter().any(|pin| self.natures.of(pin.element).may_drive()) {
+        if self.connectivity.pins(net).iter().any(|pin| self.natures.kind(pin.element).is_foreign()) {
             return Looks::Driven;
         }
         Looks::Open

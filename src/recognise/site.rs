@@ -7,6 +7,8 @@ use super::array::{Array, Channel};
 use super::board::Board;
 use super::driver::Drivers;
 use super::load::{Hanging, Load};
+use super::noted::NotedLoad;
+use super::off_board;
 use super::turn_off::Ways;
 
 /// One array with its surroundings.
@@ -17,7 +19,7 @@ pub(crate) struct Site<'b> {
     /// Its number among the board's arrays.
     pub number: usize,
     /// The array.
-    pub array: &'b Array,
+    pub array: &'b Array<'b>,
     /// Its channels, in the order of the array's.
     pub channels: Vec<ChannelSite<'b>>,
 }
@@ -47,8 +49,9 @@ impl<'b> Site<'b> {
 }
 
 impl<'b> ChannelSite<'b> {
-    fn of(board: &'b Board<'b>, array: &'b Array, channel: &'b Channel) -> Self {
-        let hanging = Hanging::of(board, channel.output.net);
+    fn of(board: &'b Board<'b>, array: &'b Array<'b>, channel: &'b Channel) -> Self {
+        let mut hanging = Hanging::of(board, channel.output.net);
+        off_board::add(board, array, channel, &mut hanging);
         let ways = hanging.loads.iter().map(|load| Ways::of(board, array, channel, &hanging, load)).collect();
         let drivers: Vec<Drivers> = channel.inputs.iter().map(|pin| Drivers::of(board, pin.net)).collect();
         let spare = board.is_lone(channel.output.net) && drivers.iter().all(|drivers| drivers.active().next().is_none());
@@ -72,6 +75,15 @@ impl<'b> ChannelSite<'b> {
 }
 
 impl Site<'_> {
+    /// What the notes say of `load` on `channel`.
+    pub(crate) fn load_note(&self, channel: &ChannelSite<'_>, load: &Load) -> Option<&NotedLoad<'_>> {
+        let noted = self.board.noted;
+        let at_pin = load.behind.and_then(|pin| noted.load_at_pin(pin));
+        at_pin
+            .or_else(|| noted.load_at_channel(&self.array.refdes, channel.channel.index))
+            .or_else(|| self.board.connectivity.joined(channel.output()).into_iter().find_map(|net| noted.load_at_net(net)))
+    }
+
     /// Whether the board looks like one sheet of several: no input of the array is driven, and all their nets bear
     /// given names.
     pub(crate) fn inputs_lead_elsewhere(&self) -> bool {

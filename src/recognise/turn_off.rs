@@ -72,7 +72,7 @@ pub(crate) struct Ways {
 
 impl Ways {
     /// The ways of the winding of `load` on `channel`.
-    pub(crate) fn of(board: &Board<'_>, array: &Array, channel: &Channel, hanging: &Hanging, load: &Load) -> Self {
+    pub(crate) fn of(board: &Board<'_>, array: &Array<'_>, channel: &Channel, hanging: &Hanging, load: &Load) -> Self {
         let mut ways = Self::default();
         let output = channel.output.net;
         let winding = load.branches.iter().find_map(|&row| {
@@ -100,7 +100,7 @@ impl Ways {
         self.list.iter().filter(|way| way.by == By::Clamp)
     }
 
-    fn clamp(&mut self, board: &Board<'_>, array: &Array, channel: &Channel, others: &[Id<Net>]) {
+    fn clamp(&mut self, board: &Board<'_>, array: &Array<'_>, channel: &Channel, others: &[Id<Net>]) {
         let Some(clamp) = array.clamp_of(channel) else { return };
         let start = clamp.net;
         if let Some(target) = target(board, start, others) {

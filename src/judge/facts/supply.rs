@@ -40,7 +40,7 @@ impl Feed {
         });
         let shared = shared_resistor(site, channel, load);
         Self {
-            safety: Fact::flag(site.load_note(channel, load).is_some_and(|note| note.safety.as_ref().is_some_and(|said| said.value))),
+            safety: Fact::flag(is_safety(site, channel, load)),
             to_return: to_return(site, channel, load),
             fed: fed(site, load),
             far_end: Fact::text(load.supply.net().map_or(String::new(), |net| board.circuit.net_name(net))),
@@ -161,4 +161,9 @@ fn reversed(site: &Site<'_>, load: &Load) -> Fact {
         Some(&element) if load.led_reversed => fact.at(site.board.circuit.elements[element].span, "points the wrong way"),
         _ => fact,
     }
+}
+
+/// Whether the notes say that the load must never be on by mistake.
+pub(crate) fn is_safety(site: &Site<'_>, channel: &ChannelSite<'_>, load: &Load) -> bool {
+    site.load_note(channel, load).is_some_and(|note| note.says.safety.as_ref().is_some_and(|said| said.value))
 }
