@@ -5,6 +5,7 @@ mod circuit;
 mod judge;
 mod netlist;
 mod notes;
+mod parts;
 mod report;
 mod review;
 

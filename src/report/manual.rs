@@ -109,8 +109,8 @@ THE NOTES FILE (TOML) says what a netlist cannot:
     [types."RELAY_5V"]           # every part of a type
     ohms = 125.0                 # also henries, operate_v, release_v
 
-  A name that does not exist on the board is an error, as is a key that does not exist. Sections that
-  are understood and not used yet ([[ties]], [[duty]], [[together]], [limits.CARD],
+  A name that does not exist on the board is an error, as is a key that does not exist. Sections
+  that are understood and not used yet ([[ties]], [[duty]], [[together]], [limits.CARD],
   [[concessions]]) are named when they occur.
 
 LIMITS
