@@ -46,6 +46,14 @@ lowside review NETLIST...
   --quiet                 only what is broken
   --color auto|always|never   colour the class words; NO_COLOR is honoured
 
+lowside parts [TYPE]
+  Lists the part profiles; with a type designator or a profile's name, that profile with each number
+  and where it was published. Takes --as and --to.
+
+    lowside parts
+    lowside parts 2003A
+    lowside parts 2003A --as json
+
 lowside manual
   Prints this text.
 
