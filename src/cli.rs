@@ -16,7 +16,7 @@ pub(crate) struct Cli {
     /// Colour the class words; auto colours a terminal where NO_COLOR is not set
     #[arg(long, global = true, value_name = "WHEN", default_value = "auto", hide_default_value = true)]
     color: Color,
-    /// Print only what is broken
+    /// Print only what is broken, and hazards that are not ruled out
     #[arg(long, global = true)]
     quiet: bool,
 }

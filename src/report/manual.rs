@@ -43,7 +43,7 @@ lowside review NETLIST...
   --unproven-stops        an unproven judgement at or above the stop class gives 1 too
   --strict                a netlist that was read only in part gives 2
   --allow-include FOLDER  .include and .lib may read from this folder too; may be repeated
-  --quiet                 only what is broken
+  --quiet                 only what is broken, and hazards that are not ruled out
   --color auto|always|never   colour the class words; NO_COLOR is honoured
 
 lowside parts [TYPE]
