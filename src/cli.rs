@@ -16,7 +16,7 @@ pub(crate) struct Cli {
     /// Colour the class words; auto colours a terminal where NO_COLOR is not set
     #[arg(long, global = true, value_name = "WHEN", default_value = "auto", hide_default_value = true)]
     color: Color,
-    /// Print only what is broken
+    /// Print only what is broken, and hazards that are not ruled out
     #[arg(long, global = true)]
     quiet: bool,
 }
@@ -26,6 +26,8 @@ pub(crate) struct Cli {
 pub(crate) enum Command {
     /// Judge each netlist
     Review(Review),
+    /// List part profiles, or show one whole
+    Parts(Parts),
     /// Print the manual
     Manual,
     /// Print a completion script for a shell
@@ -44,12 +46,8 @@ pub(crate) struct Review {
     /// The notes file [default: BOARD.notes.toml beside BOARD.cir, if there]
     #[arg(long, value_name = "FILE")]
     pub(crate) notes: Option<PathBuf>,
-    /// For a person, or for a program
-    #[arg(long = "as", value_name = "FORMAT", default_value = "text")]
-    form: Form,
-    /// Write to this file, whole or not at all
-    #[arg(long, value_name = "FILE")]
-    pub(crate) to: Option<PathBuf>,
+    #[command(flatten)]
+    pub(crate) output: Output,
     /// The mildest class that stops
     #[arg(long, value_name = "CLASS", default_value = "malfunction")]
     stop_at: StopAt,
@@ -62,6 +60,27 @@ pub(crate) struct Review {
     /// A folder that netlists may include files from; may be repeated
     #[arg(long, value_name = "FOLDER")]
     pub(crate) allow_include: Vec<PathBuf>,
+}
+
+/// `lowside parts`
+#[derive(clap::Args, Debug)]
+pub(crate) struct Parts {
+    /// A type designator, or a profile's name
+    #[arg(value_name = "TYPE")]
+    pub(crate) wanted: Option<String>,
+    #[command(flatten)]
+    pub(crate) output: Output,
+}
+
+/// In what form a result is written, and where.
+#[derive(clap::Args, Debug)]
+pub(crate) struct Output {
+    /// For a person, or for a program
+    #[arg(long = "as", value_name = "FORMAT", default_value = "text")]
+    form: Form,
+    /// Write to this file, whole or not at all
+    #[arg(long, value_name = "FILE")]
+    pub(crate) to: Option<PathBuf>,
 }
 
 #[derive(ValueEnum, Clone, Copy, Debug)]
@@ -103,9 +122,9 @@ impl Cli {
         Ok(cli)
     }
 
-    /// How text looks that goes to a file (`to_file`) or to standard output.
-    pub(crate) fn look(&self, to_file: bool) -> Look {
-        let terminal = !to_file && io::stdout().is_terminal();
+    /// How text looks that goes to `output`.
+    pub(crate) fn look(&self, output: &Output) -> Look {
+        let terminal = output.to.is_none() && io::stdout().is_terminal();
         let color = match self.color {
             Color::Always => true,
             Color::Never => false,
@@ -118,7 +137,7 @@ impl Cli {
     }
 }
 
-impl Review {
+impl Output {
     /// The form of the result.
     pub(crate) fn format(&self) -> Format {
         match self.form {
@@ -126,7 +145,9 @@ impl Review {
             Form::Json => Format::Json,
         }
     }
+}
 
+impl Review {
     /// The mildest class that stops.
     pub(crate) fn stop_at(&self) -> Class {
         match self.stop_at {

@@ -12,5 +12,5 @@ mod report;
 mod review;
 
 pub use judge::finding::{Class, Verdict};
-pub use report::{Format, Look, SinkError, into_sink, manual, write_reviews};
+pub use report::{Format, Look, PartListing, SinkError, into_sink, manual, part_listing, write_reviews};
 pub use review::{Options, Review, review};

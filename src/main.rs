@@ -1,9 +1,9 @@
 //! The program: arguments in, exit status out.
 
-use std::io::Write as _;
+use std::io::Write;
 use std::process::ExitCode;
 
-use lowside::{Options, SinkError, into_sink, manual, review, write_reviews};
+use lowside::{Options, SinkError, into_sink, manual, part_listing, review, write_reviews};
 
 mod cli;
 mod exit;
@@ -30,18 +30,29 @@ fn main() -> ExitCode {
                 strict: arguments.strict,
             };
             let options = Options { notes: arguments.notes.clone(), allow_include: arguments.allow_include.clone() };
-            let look = cli.look(arguments.to.is_some());
+            let look = cli.look(&arguments.output);
             let mut worst = Status::default();
-            let written = into_sink(arguments.to.as_deref(), |out| {
+            let written = into_sink(arguments.output.to.as_deref(), |out| {
                 let reviews = arguments.netlists.iter().map(|netlist| review(netlist, &options));
                 let mut seen = reviews.inspect(|review| worst = worst.max(rule.status(review)));
-                let written = write_reviews(out, &mut seen, arguments.format(), look);
+                let written = write_reviews(out, &mut seen, arguments.output.format(), look);
                 // A reader that went away early must not hide what the other netlists come to.
                 seen.for_each(drop);
                 written
             });
             status(written, worst)
         }
+        Command::Parts(arguments) => match part_listing(arguments.wanted.as_deref()) {
+            Ok(parts) => {
+                let look = cli.look(&arguments.output);
+                let write = |out: &mut dyn Write| parts.write(out, arguments.output.format(), look);
+                status(into_sink(arguments.output.to.as_deref(), write), Status::Passes)
+            }
+            Err(text) => {
+                complain(&format!("lowside: {text}\n"));
+                Status::Unusable.into()
+            }
+        },
         Command::Manual => status(into_sink(None, |out| out.write_all(manual().as_bytes())), Status::Passes),
         Command::Completions { shell } => status(into_sink(None, |out| completions(*shell, out)), Status::Passes),
     }

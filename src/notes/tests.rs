@@ -341,3 +341,20 @@ fn a_name_that_does_not_exist_is_an_error_with_a_suggestion() {
         ],
     );
 }
+
+proptest::proptest! {
+    #[test]
+    fn no_text_makes_the_reader_panic(text in "[\\[\\]{}\"'=.#a-z0-9 \\n\u{1b}\u{e9}]{0,200}") {
+        let _ = notes(&text);
+    }
+
+    #[test]
+    fn no_change_of_a_good_file_makes_the_reader_panic(at in 0..WHOLE.len(), len in 0usize..40, with in "[\\[\\]{}\"'=.,a1 \\n]{0,6}") {
+        let mut text = WHOLE.to_owned();
+        text.replace_range(at..(at + len).min(WHOLE.len()), &with);
+        let (_, notices, sources) = notes(&text);
+        for notice in notices {
+            let _ = shown(&notice, &sources);
+        }
+    }
+}

@@ -10,6 +10,8 @@ use crate::circuit::model::{Circuit, Element, Net};
 use crate::connect::graph::{Connectivity, Pin};
 use crate::connect::rails::Rails;
 
+use crate::parts::library::Library;
+
 use super::array::Array;
 use super::nature::{Nature, Natures};
 use super::noted::Noted;
@@ -29,11 +31,14 @@ pub(crate) struct Board<'a> {
     pub natures: &'a Natures<'a>,
     /// What the notes file says of nets, loads and parts.
     pub noted: &'a Noted<'a>,
+    /// Part profiles and logic families.
+    pub library: &'a Library,
     /// The arrays in order of the netlist.
     pub arrays: Vec<Array<'a>>,
     outputs: FxHashMap<Id<Net>, SmallVec<[(u32, u32); 1]>>,
     inputs: FxHashMap<Id<Net>, SmallVec<[(u32, u32); 1]>>,
     coupled: Vec<Id<Element>>,
+    several_returns: bool,
 }
 
 /// What a pin does to the net it is on, as far as the part is known.
@@ -59,6 +64,7 @@ impl<'a> Board<'a> {
         rails: &'a Rails,
         natures: &'a Natures<'a>,
         noted: &'a Noted<'a>,
+        library: &'a Library,
         arrays: Vec<Array<'a>>,
     ) -> Self {
         let mut outputs: FxHashMap<Id<Net>, SmallVec<[(u32, u32); 1]>> = FxHashMap::default();
@@ -75,7 +81,11 @@ impl<'a> Board<'a> {
         let mut coupled: Vec<Id<Element>> =
             circuit.couplings.iter().flat_map(|coupling| [coupling.first, coupling.second]).collect();
         coupled.sort_unstable();
-        Self { circuit, connectivity, rails, natures, noted, arrays, outputs, inputs, coupled }
+        let mut returns: Vec<Id<Net>> =
+            circuit.nets.ids().filter(|&net| rails.is_return(net) && !connectivity.pins(net).is_empty()).collect();
+        returns.dedup_by(|a, b| connectivity.same(*a, *b));
+        let several_returns = returns.iter().any(|&net| !connectivity.same(net, returns[0]));
+        Self { circuit, connectivity, rails, natures, noted, library, arrays, outputs, inputs, coupled, several_returns }
     }
 
     /// The first channel whose output is on the copper of `net`: array and channel by row.
@@ -195,6 +205,16 @@ impl<'a> Board<'a> {
     /// Whether a person gave the net its name, not an exporter.
     pub(crate) fn has_given_name(&self, net: Id<Net>) -> bool {
         is_given(self.circuit.names.text(self.circuit.nets[net].name))
+    }
+
+    /// Whether the netlist shows more than one return.
+    pub(crate) fn has_several_returns(&self) -> bool {
+        self.several_returns
+    }
+
+    /// Whether the netlist is one sheet of several, as the notes say.
+    pub(crate) fn is_partial(&self) -> bool {
+        self.noted.is_partial()
     }
 
     /// The net at `pin`.

@@ -61,6 +61,16 @@ pub(crate) struct Drivers {
     pub cut: bool,
 }
 
+impl Driver {
+    /// The part whose pin it is, where it is a part's pin.
+    pub(crate) fn part(&self) -> Option<Id<Element>> {
+        match self.kind {
+            DriverKind::PushPull(pin) | DriverKind::OpenDrain(pin) | DriverKind::MayDrive(pin) => Some(pin.element),
+            _ => None,
+        }
+    }
+}
+
 impl Drivers {
     /// What can move `input`.
     pub(crate) fn of(board: &Board<'_>, input: Id<Net>) -> Self {

@@ -20,6 +20,8 @@ pub(crate) struct Noted<'n> {
     net_loads: FxHashMap<Id<Net>, NotedLoad<'n>>,
     pin_loads: FxHashMap<(Id<Element>, u16), NotedLoad<'n>>,
     channel_loads: FxHashMap<(String, u32), NotedLoad<'n>>,
+    together: Vec<Vec<(String, u32)>>,
+    partial: bool,
 }
 
 /// A load of the notes file, with the net that it says feeds it.
@@ -78,7 +80,10 @@ pub(crate) fn find_pin(circuit: &Circuit, element: Id<Element>, pin: &str) -> Op
 impl<'n> Noted<'n> {
     /// Finds on the board what `notes` speaks of. Names that do not exist are told elsewhere and left out here.
     pub(crate) fn find(circuit: &Circuit, directory: &Directory, notes: &'n Notes) -> Self {
-        let mut noted = Self::default();
+        let mut noted = Self { partial: notes.board.partial.as_ref().is_some_and(|said| said.value), ..Self::default() };
+        for group in notes.together.iter().filter(|group| group.always.as_ref().is_some_and(|said| said.value)) {
+            noted.together.push(group.channels.iter().filter_map(|said| channel_of(&said.value)).collect());
+        }
         for net in &notes.nets {
             if let Some(id) = directory.net(&net.name.value) {
                 noted.nets.insert(id, &net.says);
@@ -150,6 +155,18 @@ impl<'n> Noted<'n> {
         self.part(element).and_then(|part| part.fitted.as_ref()).is_some_and(|said| !said.value)
     }
 
+    /// Whether the notes say that these channels are only ever on or off together.
+    pub(crate) fn always_together(&self, channels: &[(&str, u32)]) -> bool {
+        self.together.iter().any(|group| {
+            channels.iter().all(|(array, channel)| group.iter().any(|(a, c)| a.eq_ignore_ascii_case(array) && c == channel))
+        })
+    }
+
+    /// Whether the notes say that the netlist is one sheet of several.
+    pub(crate) fn is_partial(&self) -> bool {
+        self.partial
+    }
+
     /// What the notes say a part's pins do to their nets.
     pub(crate) fn pin_use(&self, pin: Pin) -> Option<PinUse> {
         let driver = self.part(pin.element)?.driver.as_ref()?;
@@ -173,6 +190,10 @@ impl<'n> Noted<'n> {
             }
         }
     }
+}
+
+fn channel_of(at: &At) -> Option<(String, u32)> {
+    if let At::Channel(array, channel) = at { Some((array.to_ascii_lowercase(), *channel)) } else { None }
 }
 
 /// What a noted driver does to a net: a logic family pulls both ways unless its kind says otherwise.

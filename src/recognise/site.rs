@@ -1,7 +1,8 @@
 //! An array's site: its channels with everything around them, looked up once and then only read.
 
 use crate::base::table::Id;
-use crate::circuit::model::Net;
+use crate::circuit::model::{Element, Net};
+use crate::notes::model::DriverNotes;
 
 use super::array::{Array, Channel};
 use super::board::Board;
@@ -89,5 +90,30 @@ impl Site<'_> {
     pub(crate) fn inputs_lead_elsewhere(&self) -> bool {
         let inputs = || self.channels.iter().flat_map(|channel| channel.channel.inputs.iter().zip(&channel.drivers));
         inputs().all(|(_, drivers)| !drivers.any()) && inputs().all(|(pin, _)| self.board.has_given_name(pin.net))
+    }
+}
+
+impl Site<'_> {
+    /// The logic family that drives `input`, by the notes or by the driving part's family.
+    pub(crate) fn driver_family(&self, input: Id<Net>) -> Option<&str> {
+        let board = self.board;
+        let noted = board.connectivity.joined(input).into_iter().find_map(|net| board.noted.net(net)?.driver.as_ref());
+        if let Some(DriverNotes::Family(name)) = noted.map(|said| &said.value) {
+            return Some(name);
+        }
+        let drivers = Drivers::of(board, input);
+        let parts: Vec<Id<Element>> = drivers.active().filter_map(|driver| driver.part()).collect();
+        parts.into_iter().find_map(|part| {
+            let noted = board.noted.part(part).and_then(|part| part.driver.as_ref());
+            match noted.map(|said| &said.value) {
+                Some(DriverNotes::Family(name)) => Some(name.as_str()),
+                _ => board.natures.kind(part).family.and_then(|family| family.levels.as_deref()),
+            }
+        })
+    }
+
+    /// The first part that drives an input of the array.
+    pub(crate) fn driving_part(&self) -> Option<Id<Element>> {
+        self.channels.iter().flat_map(|channel| &channel.drivers).flat_map(Drivers::active).find_map(|driver| driver.part())
     }
 }

@@ -43,8 +43,16 @@ lowside review NETLIST...
   --unproven-stops        an unproven judgement at or above the stop class gives 1 too
   --strict                a netlist that was read only in part gives 2
   --allow-include FOLDER  .include and .lib may read from this folder too; may be repeated
-  --quiet                 only what is broken
+  --quiet                 only what is broken, and hazards that are not ruled out
   --color auto|always|never   colour the class words; NO_COLOR is honoured
+
+lowside parts [TYPE]
+  Lists the part profiles; with a type designator or a profile's name, that profile with each number
+  and where it was published. Takes --as and --to.
+
+    lowside parts
+    lowside parts 2003A
+    lowside parts 2003A --as json
 
 lowside manual
   Prints this text.
@@ -109,8 +117,8 @@ THE NOTES FILE (TOML) says what a netlist cannot:
     [types."RELAY_5V"]           # every part of a type
     ohms = 125.0                 # also henries, operate_v, release_v
 
-  A name that does not exist on the board is an error, as is a key that does not exist. Sections that
-  are understood and not used yet ([[ties]], [[duty]], [[together]], [limits.CARD],
+  A name that does not exist on the board is an error, as is a key that does not exist. Sections
+  that are understood and not used yet ([[ties]], [[duty]], [[together]], [limits.CARD],
   [[concessions]]) are named when they occur.
 
 LIMITS

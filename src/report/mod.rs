@@ -14,7 +14,7 @@ mod json;
 mod look;
 mod manual;
 mod open;
-pub(crate) mod parts;
+mod parts;
 mod sink;
 mod text;
 mod wrap;
@@ -26,6 +26,7 @@ mod tests;
 
 pub use look::Look;
 pub use manual::manual;
+pub use parts::{PartListing, part_listing};
 pub use sink::{SinkError, into_sink};
 
 /// A JSON document that holds one list under `key`.

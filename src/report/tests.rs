@@ -2,7 +2,6 @@
 
 use super::cards::{self, CardPage};
 use super::clean::hidden;
-use super::parts::{self, PartNumber, PartPage};
 use super::sample::{bad, finding, good};
 use super::{Format, Look, write_reviews};
 use crate::base::notice::{Notice, Severity};
@@ -177,34 +176,4 @@ fn a_fact_is_listed_with_its_unit_and_meaning() {
     let json = printed(|out| cards::write_facts(out, facts.iter(), Format::Json, Look::default()));
     let json: serde_json::Value = serde_json::from_str(&json).unwrap();
     assert_eq!((&json["facts"][0]["unit"], &json["facts"][1]["unit"]), (&serde_json::Value::Null, &"V".into()));
-}
-
-#[test]
-fn a_part_shows_each_number_with_its_source() {
-    let part = PartPage {
-        name: "x2003".to_owned(),
-        title: "seven channels, 5 V inputs".to_owned(),
-        types: vec!["2003A".to_owned()],
-        channels: 7,
-        pins: vec!["in 1".to_owned(), "in 2".to_owned()],
-        numbers: vec![PartNumber {
-            name: "collector current".to_owned(),
-            value: Some(0.5),
-            unit: "A",
-            shown: "500 mA".to_owned(),
-            source: "from memory".to_owned(),
-        }],
-        remarks: Vec::new(),
-    };
-    insta::assert_snapshot!(printed(|out| parts::write_page(out, &part, Format::Text, Look::default())), @r"
-    x2003 (7 channels)
-      seven channels, 5 V inputs
-      Types: 2003A
-      Pins: 1 in 1, 2 in 2
-
-    collector current  500 mA  from memory
-    ");
-    let json = printed(|out| parts::write_list(out, &[part], Format::Json, Look::default()));
-    let json: serde_json::Value = serde_json::from_str(&json).unwrap();
-    assert_eq!(json["parts"][0]["numbers"][0]["value"], 0.5);
 }

@@ -2,15 +2,23 @@
 
 use std::borrow::Cow;
 
-use super::clean::shown;
+use super::clean::{short, shown};
+
+/// Words of one paragraph that are shown. Our own texts have a few dozen; a quoted name in one may have any number.
+const WORDS: usize = 400;
 
 /// Appends `text` in lines of at most `width` characters, the first after `first`, the others after `rest`. Words
-/// longer than a line stay whole: a name that is torn apart cannot be searched for.
+/// longer than a line stay whole: a name that is torn apart cannot be searched for. Monstrous ones lose their middle.
 pub(crate) fn paragraph(out: &mut String, text: &str, width: usize, first: &str, rest: &str) {
     let mut column = first.chars().count();
     out.push_str(first);
     let mut fresh = true;
-    for word in text.split_whitespace() {
+    for (row, word) in text.split_whitespace().enumerate() {
+        if row == WORDS {
+            out.push_str(" …");
+            break;
+        }
+        let word = short(word);
         let length = word.chars().count();
         if !fresh && column + 1 + length > width {
             out.push('\n');
@@ -22,7 +30,7 @@ pub(crate) fn paragraph(out: &mut String, text: &str, width: usize, first: &str,
             out.push(' ');
             column += 1;
         }
-        out.push_str(word);
+        out.push_str(&word);
         column += length;
         fresh = false;
     }
@@ -79,6 +87,15 @@ mod tests {
         check("tie the clamp pin", 9, "* tie the\n  clamp\n  pin\n");
         check("a Net-(U1-Pad3) b", 6, "* a\n  Net-(U1-Pad3)\n  b\n");
         check("  ", 9, "* \n");
+    }
+
+    #[test]
+    fn a_name_without_end_does_not_flood_the_terminal() {
+        for text in ["x".repeat(1_000_000), "x ".repeat(1_000_000)] {
+            let mut out = String::new();
+            paragraph(&mut out, &text, 80, "", "");
+            assert!(out.len() < 2_000, "{}", out.len());
+        }
     }
 
     #[test]

@@ -81,3 +81,38 @@ pub(crate) fn load_name(board: &Board<'_>, load: &Load) -> String {
         None => board.names_of(&load.elements),
     }
 }
+
+/// Are these two returns joined outside the board?
+pub(crate) fn returns_joined(board: &Board<'_>, a: Id<Net>, b: Id<Net>) -> Question {
+    let (a, b) = (board.circuit.net_name(a), board.circuit.net_name(b));
+    Question { at: format!("{a} and {b}"), asks: "joined outside the board?", answer: format!("[[ties]] nets = [\"{a}\", \"{b}\"]") }
+}
+
+/// Which logic family drives the inputs of this array?
+pub(crate) fn driver_family(site: &Site<'_>, reference: Option<Id<Net>>) -> Question {
+    let part = site.driving_part();
+    let board = site.board;
+    match (part, reference) {
+        (Some(part), _) => Question {
+            at: board.circuit.refdes(part),
+            asks: "which logic family?",
+            answer: format!("[parts.{}] driver = \"…\"", board.circuit.refdes(part)),
+        },
+        (None, Some(net)) => Question {
+            at: board.circuit.net_name(net),
+            asks: "how far may it shift?",
+            answer: format!("[nets.{}] shift_v = …", board.circuit.net_name(net)),
+        },
+        (None, None) => inputs_of(site),
+    }
+}
+
+/// Which pin is which?
+pub(crate) fn pins_of(board: &Board<'_>, element: Id<Element>) -> Question {
+    let refdes = board.circuit.refdes(element);
+    Question {
+        answer: format!("[parts.{refdes}] pins = {{ inputs = […], outputs = […], emitter = \"…\", clamp = \"…\" }}"),
+        at: refdes,
+        asks: "which pin is which?",
+    }
+}
