@@ -3,7 +3,10 @@
 // Lifted when the pipeline is joined.
 #![allow(dead_code)]
 
+pub(crate) mod decode;
 pub(crate) mod element;
+pub(crate) mod expression;
+mod function;
 pub(crate) mod model;
 pub(crate) mod number;
 pub(crate) mod source;
