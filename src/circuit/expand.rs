@@ -210,9 +210,9 @@ impl<'a> Expander<'a> {
         let mut ids = Vec::new();
         for part in &template.parts {
             let element = Id::new(self.circuit.elements.len());
-            match part.definition {
-                Some(id) if part.fitted && !self.closed.contains(&id) => self.instance(template, part, id, frame)?,
-                _ => self.element(template, part, frame)?,
+            match part.opened(program, self.closed) {
+                Some(id) => self.instance(template, part, id, frame)?,
+                None => self.element(template, part, frame)?,
             }
             if !template.couplings.is_empty() {
                 ids.push(element);
@@ -494,6 +494,7 @@ impl<'a> Expander<'a> {
             || program.definitions().map(|(_, definition)| program.names.text(definition.name)),
             || program.models.iter().map(|(_, model)| program.names.text(model.name)),
         );
+        notices.splice(0..0, std::mem::take(&mut self.plan.problems));
         if let Some(span) = self.gnd_span {
             notices.push(match self.plan.between_grounds {
                 None => Notice::at(Severity::Note, span, "GND is taken as node 0"),

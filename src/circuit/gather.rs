@@ -8,7 +8,7 @@ use hashbrown::{HashMap, HashSet};
 use super::header;
 use super::include::{Door, Found, Refusal};
 use super::limits::{Limits, passed};
-use super::params::Evaluator;
+use super::params::{Env, Evaluator};
 use super::program::{Definition, Formula, Line, ModelLine, Program, Scope, pairs, text};
 use super::remarks::{Remarks, Topic};
 use super::sections::{Request, Sections, request};
@@ -177,6 +177,7 @@ impl<'a> Gatherer<'a> {
             match statement.form {
                 StatementForm::Element => self.scope_mut().body.push(line),
                 StatementForm::Unread => self.scope_mut().unread.push(line),
+                StatementForm::Encrypted => self.scope_mut().sealed = true,
                 StatementForm::Subckt => self.subckt(line, statement)?,
                 StatementForm::Ends => self.ends(line, statement, floor),
                 StatementForm::Model => self.model(line, statement),
@@ -435,8 +436,9 @@ impl<'a> Gatherer<'a> {
     fn decide(&mut self, line: Line, statement: Statement) -> Result<Option<bool>, Box<Notice>> {
         let (file, words) = self.words(line);
         let span = header::span(file, &words, 1..words.len());
+        // Inside a definition a parameter may differ from instance to instance: only global ones are asked.
         let mut evaluator = Evaluator::new(&self.program, self.sources, self.limits);
-        let value = evaluator.constant(self.scope(), span)?;
+        let value = evaluator.at(Env::TOP, span)?;
         if value.is_none() {
             self.remarks.add(Topic::Undecided, statement.span, "");
         }
@@ -528,8 +530,10 @@ impl<'a> Gatherer<'a> {
                 return Ok(None);
             }
         };
-        let Some(text) = self.decode(path, &bytes, span) else { return Ok(None) };
         let shown = self.shown(path, span.file);
+        let decoded = netlist::decode::decode(&shown, bytes);
+        self.program.notices.extend(decoded.notice);
+        let text = decoded.text;
         let file = self.sources.add(shown, text);
         let deck = netlist::read(file, self.sources.text(file));
         self.program.notices.extend(deck.notices.iter().cloned());

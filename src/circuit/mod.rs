@@ -16,6 +16,7 @@ pub(crate) mod model;
 mod models;
 mod params;
 mod plan;
+mod pool;
 pub(crate) mod program;
 mod remarks;
 mod sections;
@@ -54,7 +55,7 @@ pub(crate) fn load(
     limits: &Limits,
 ) -> Result<Program, Box<Notice>> {
     let mut program = gather::Gatherer::new(sources, roots, allowed, limits).run(roots)?;
-    compile::compile(&mut program, sources)?;
+    compile::compile(&mut program, sources, limits)?;
     Ok(program)
 }
 
