@@ -3,28 +3,20 @@
 use super::limits::{Limits, passed};
 use super::model::Value;
 use super::models;
-use super::params::{Env, Evaluator};
 use super::plan::PROBLEMS;
 use super::pool::Pool;
 use super::program::{Line, ModelLine, Program, Scope, text};
 use super::remarks::Topic;
-use super::source;
-use super::template::{Amount, Local, Pair, Part, Shared, Tail, Template};
-use super::value;
+use super::template::{Local, Part, Shared, Template};
 use crate::base::names::Name;
 use crate::base::notice::{Notice, Severity};
-use crate::base::quantity::Ohms;
 use crate::base::sources::Sources;
 use crate::base::span::{FileId, Span};
 use crate::base::table::Id;
 use crate::netlist::designator;
-use crate::netlist::element::{self, ElementForm, Known, ModelHint, Problem, ValueForm};
-use crate::netlist::model::{PartClass, Reading, Word, WordForm};
-use crate::netlist::number::{self, Doubt, Number, Spelling};
+use crate::netlist::element::{self, ElementForm, Known, ModelHint, Problem};
+use crate::netlist::model::{PartClass, Word};
 use crate::netlist::words::assignments;
-
-/// Inductors that one coupling may join: each pair of them is a coupling.
-const COUPLED: usize = 64;
 
 /// Makes the templates of all scopes.
 ///
@@ -40,12 +32,13 @@ pub(super) fn compile(program: &mut Program, sources: &Sources, limits: &Limits)
     Ok(())
 }
 
-struct Compiler<'a> {
-    sources: &'a Sources,
-    limits: &'a Limits,
+/// Makes templates, one scope after the other.
+pub(super) struct Compiler<'a> {
+    pub(super) sources: &'a Sources,
+    pub(super) limits: &'a Limits,
     /// What each model describes, one row a model line.
-    hints: Vec<ModelHint>,
-    pool: Pool,
+    pub(super) hints: Vec<ModelHint>,
+    pub(super) pool: Pool,
 }
 
 /// What a line's reading may ask about the scope that it stands in.
@@ -83,11 +76,11 @@ impl Compiler<'_> {
         template.parts.reserve_exact(body.len());
         self.pool.enter();
         self.ports(program, scope, &mut template);
-        self.designators(program, &body);
-        for &line in &body {
-            self.line(program, scope, line, &mut template)?;
+        let designators = self.designators(program, &body);
+        for (&line, written) in body.iter().zip(designators) {
+            self.line(program, scope, (line, written), &mut template)?;
         }
-        self.couplings(program, &body, &mut template);
+        self.couplings(program, &mut template);
         for line in std::mem::take(&mut template.not_read).into_iter().chain(program.scopes[scope].unread.clone()) {
             self.unread(program, line, &mut template);
         }
@@ -110,13 +103,14 @@ impl Compiler<'_> {
     }
 
     /// Notes every designator as written, so that a short form is given only where it is free.
-    fn designators(&mut self, program: &mut Program, body: &[Line]) {
+    fn designators(&mut self, program: &mut Program, body: &[Line]) -> Vec<Name> {
+        let mut names = Vec::with_capacity(body.len());
         for &line in body {
             let file = program.file(line);
-            let Some(&word) = program.line(line).1.first() else { continue };
-            let written = text(self.sources, file, word);
+            let written = program.line(line).1.first().map_or("", |&word| text(self.sources, file, word));
             let name = program.names.intern(written);
             self.pool.write_designator(name);
+            names.push(name);
             if written.as_bytes().first().is_some_and(|letter| letter.eq_ignore_ascii_case(&b'l')) {
                 self.pool.put_inductor(name);
                 let short = designator::strip(written);
@@ -126,13 +120,14 @@ impl Compiler<'_> {
                 }
             }
         }
+        names
     }
 
     fn line(
         &mut self,
         program: &mut Program,
         scope: Id<Scope>,
-        line: Line,
+        (line, written): (Line, Name),
         template: &mut Template,
     ) -> Result<(), Box<Notice>> {
         let sources = self.sources;
@@ -159,7 +154,7 @@ impl Compiler<'_> {
             let local = self.node(program, file, word, template);
             template.pins.push(local);
         }
-        let refdes = self.refdes(program, &form, span, template);
+        let refdes = self.refdes(program, &form, (written, span), template);
         let mut part = Part {
             refdes,
             span,
@@ -229,13 +224,16 @@ impl Compiler<'_> {
         &mut self,
         program: &mut Program,
         form: &ElementForm<'_>,
-        span: Span,
+        (written, span): (Name, Span),
         template: &mut Template,
     ) -> Name {
-        let mut name = program.names.intern(form.refdes);
-        if form.refdes != form.written && (self.pool.is_written(name) || self.pool.is_taken(name)) {
-            template.remarks.add(Topic::KeptPrefix, span, form.written);
-            name = program.names.intern(form.written);
+        let mut name = written;
+        if form.refdes != form.written {
+            name = program.names.intern(form.refdes);
+            if self.pool.is_written(name) || self.pool.is_taken(name) {
+                template.remarks.add(Topic::KeptPrefix, span, form.written);
+                name = written;
+            }
         }
         if self.pool.take(name) {
             return name;
@@ -246,218 +244,6 @@ impl Compiler<'_> {
             let numbered = program.names.intern(&numbered);
             if !self.pool.is_written(numbered) && self.pool.take(numbered) {
                 return numbered;
-            }
-        }
-    }
-
-    fn value(
-        &mut self,
-        program: &mut Program,
-        scope: Id<Scope>,
-        line: Line,
-        form: &ElementForm<'_>,
-        part: &mut Part,
-        template: &mut Template,
-    ) -> Result<(), Box<Notice>> {
-        let file = program.file(line);
-        let place = |word: Word| Span { file, start: word.start, len: word.len };
-        match &form.value {
-            ValueForm::None => {}
-            ValueForm::Number(number) => part.value = self.number(*number, part, template),
-            ValueForm::Expression(word) => self.formula(program, place(*word), part),
-            ValueForm::Word(word) => {
-                let spelled = text(self.sources, file, *word);
-                let name = program.names.get(spelled);
-                let is_parameter = |name| program.chain(scope).any(|at| program.parameters.contains_key(&(at, name)));
-                if name.is_some_and(is_parameter) {
-                    self.formula(program, place(*word), part);
-                } else if form.kind.is_none() {
-                    part.part_type = Some(program.names.intern(spelled));
-                }
-            }
-            ValueForm::Moving(waveform) => {
-                let words = &program.decks[line.deck as usize].words;
-                let words = words.get(waveform.arguments.start as usize..waveform.arguments.end as usize);
-                let mut evaluator = Evaluator::new(program, self.sources, self.limits);
-                let mut arguments = Vec::new();
-                for &word in words.unwrap_or(&[]) {
-                    let plain = number::parse(text(self.sources, file, word)).map(|number| number.value);
-                    arguments.push(match plain {
-                        // Inside a definition a name may mean something else in each instance.
-                        None if scope.index() == 0 => evaluator.at(Env::TOP, place(word))?,
-                        plain => plain,
-                    });
-                }
-                if part.class == PartClass::VoltageSource {
-                    part.value = source::range(waveform.shape, &arguments);
-                }
-            }
-        }
-        Ok(())
-    }
-
-    fn number(&self, number: Number, part: &Part, template: &mut Template) -> Value {
-        let written = self.sources.slice(part.span);
-        let resistor = part.class == PartClass::Resistor;
-        match (number.doubt, number.spelling) {
-            (Some(Doubt::MilliOrMega), _) if resistor => {
-                template.remarks.add(Topic::MilliOrMega, part.span, written);
-                return Value::MilliOrMega(Ohms(number.value), Ohms(number.value * 1e9));
-            }
-            (Some(Doubt::FemtoOrUnit), _) if part.class == PartClass::Capacitor => {
-                template.remarks.add(Topic::Femto, part.span, written);
-            }
-            (_, Spelling::Iec60062) => template.remarks.add(Topic::Iec60062, part.span, written),
-            _ => {}
-        }
-        value::of_class(part.class, number.value)
-    }
-
-    fn formula(&self, program: &mut Program, span: Span, part: &mut Part) {
-        part.formula = Some(program.formulas.push(super::program::Formula { span }));
-    }
-
-    /// What the word for a model, subcircuit or type means.
-    fn kind(
-        &self,
-        program: &mut Program,
-        scope: Id<Scope>,
-        file: FileId,
-        word: Word,
-        part: &mut Part,
-        template: &mut Template,
-    ) {
-        let spelled = text(self.sources, file, word);
-        let name = program.names.intern(spelled);
-        part.part_type = Some(name);
-        if part.class != PartClass::Block {
-            part.model = program.model(scope, name);
-            if part.model.is_none() && part.reading == Reading::Spice && takes_model(part.class) {
-                template.remarks.add(Topic::UndefinedModel, part.span, spelled);
-            }
-            return;
-        }
-        match program.definition(scope, name) {
-            Some(id) => {
-                let definition = &program.definitions[id];
-                let most = definition.ports.len();
-                let least = most - definition.optional.len();
-                if (least..=most).contains(&usize::from(part.pin_count)) {
-                    part.definition = Some(id);
-                } else {
-                    let refdes = program.names.text(part.refdes);
-                    let shown = format!("{refdes} ({} nodes, {spelled} has {most} ports)", part.pin_count);
-                    template.remarks.add(Topic::PortCount, part.span, &shown);
-                }
-            }
-            None if part.reading == Reading::Spice => {
-                template.remarks.add(Topic::UndefinedSubcircuit, part.span, spelled);
-            }
-            None => {}
-        }
-    }
-
-    fn tails(
-        &self,
-        program: &mut Program,
-        scope: Id<Scope>,
-        line: Line,
-        form: &ElementForm<'_>,
-        part: &mut Part,
-        template: &mut Template,
-    ) {
-        let file = program.file(line);
-        let rows = form.tail.start as usize..form.tail.end as usize;
-        if rows.is_empty() {
-            return;
-        }
-        let words = program.decks[line.deck as usize].words.get(rows).unwrap_or(&[]).to_vec();
-        for (key, value) in super::program::pairs(&words) {
-            let Some(&first) = words.get(value.start) else { continue };
-            let key = program.names.intern(text(self.sources, file, words[key]));
-            let spelled = text(self.sources, file, first);
-            let amount = match number::parse(spelled) {
-                Some(number) if value.len() == 1 => Amount::Known(number.value),
-                _ => {
-                    let known = first.form == WordForm::Braced
-                        || program.names.get(spelled).is_some_and(|name| {
-                            program.chain(scope).any(|at| program.parameters.contains_key(&(at, name)))
-                        });
-                    if !known && part.class != PartClass::Block {
-                        // A word: a model, a flag, a path. It is no number in any instance.
-                        continue;
-                    }
-                    template.waits = true;
-                    let span = super::header::span(file, &words, value);
-                    Amount::Formula(program.formulas.push(super::program::Formula { span }))
-                }
-            };
-            template.tails.push(Tail { key, value: amount });
-            part.tail_count += 1;
-        }
-    }
-
-    /// What there is to say about a part that was read.
-    fn say(
-        &self,
-        program: &Program,
-        form: &ElementForm<'_>,
-        part: &Part,
-        file: FileId,
-        template: &mut Template,
-    ) {
-        if !part.fitted {
-            template.remarks.add(Topic::NotFitted, part.span, program.names.text(part.refdes));
-        }
-        if let Some(word) = form.extra {
-            let place = Span { file, start: word.start, len: word.len };
-            template.remarks.add(Topic::ExtraWord, place, text(self.sources, file, word));
-        }
-        if template.between_grounds.is_none() && (part.pin_count == 2 || part.class != PartClass::Block) {
-            let pins = template.pins.get(part.first_pin as usize..).unwrap_or(&[]);
-            let is = |wanted: Shared| {
-                pins.iter().any(|pin| {
-                    let (index, shared) = pin.index();
-                    shared && template.shared.get(index).is_some_and(|&(own, _)| own == wanted)
-                })
-            };
-            if is(Shared::Ground) && is(Shared::Gnd) {
-                template.between_grounds = Some(part.span);
-            }
-        }
-    }
-
-    /// Pairs the inductors that each coupling names.
-    fn couplings(&mut self, program: &Program, _body: &[Line], template: &mut Template) {
-        for (part, line, refers) in std::mem::take(&mut template.coupled) {
-            let file = program.file(line);
-            let words = &program.decks[line.deck as usize].words;
-            let mut windings = Vec::new();
-            let mut missing = None;
-            for row in refers {
-                let Some(&word) = words.get(row as usize) else { continue };
-                let spelled = text(self.sources, file, word);
-                let short = designator::strip(spelled);
-                let found = [spelled, short].into_iter().find_map(|name| self.pool.part(program.names.get(name)?));
-                match found.filter(|&at| template.parts[at].class == PartClass::Inductor) {
-                    Some(at) => windings.push(at as u32),
-                    None => missing = Some(spelled),
-                }
-            }
-            let own = &template.parts[part as usize];
-            if missing.is_some() || windings.len() > COUPLED {
-                template.remarks.add(Topic::NoInductor, own.span, missing.unwrap_or("too many"));
-            }
-            windings.truncate(COUPLED);
-            let factor = match (own.formula, own.value) {
-                (Some(formula), _) => Some(Amount::Formula(formula)),
-                (None, Value::Number(number)) => Some(Amount::Known(number)),
-                _ => None,
-            };
-            for (at, &first) in windings.iter().enumerate() {
-                for &second in windings.iter().skip(at + 1) {
-                    template.couplings.push(Pair { part, first, second, factor });
-                }
             }
         }
     }
@@ -479,12 +265,4 @@ impl Compiler<'_> {
             }
         }
     }
-}
-
-/// Whether an element of `class` has a model by SPICE's rules.
-fn takes_model(class: PartClass) -> bool {
-    matches!(
-        class,
-        PartClass::Diode | PartClass::Bipolar | PartClass::Jfet | PartClass::Mosfet | PartClass::Switch
-    )
 }

@@ -55,7 +55,7 @@ pub(super) fn hint(program: &Program, sources: &Sources, line: Id<ModelLine>) ->
         let base = base(program, sources, at);
         let type_word = if word(2).starts_with("ako:") { word(3) } else { word(2) };
         match (type_word.as_str(), base) {
-            ("" | "(" , Some(base)) => at = base,
+            ("" | "(", Some(base)) => at = base,
             (word, _) => return hint_of(word),
         }
     }

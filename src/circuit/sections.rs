@@ -19,6 +19,9 @@ impl Sections {
     pub(super) fn of(deck: &Deck, sources: &Sources) -> Self {
         let mut open: Vec<(&str, usize)> = Vec::new();
         let mut rows = Vec::new();
+        if !deck.statements.iter().any(|statement| statement.form == StatementForm::EndLib) {
+            return Self { rows };
+        }
         for (at, statement) in deck.statements.iter().enumerate() {
             let words = deck.words(statement);
             let name = words.get(1).map(|&word| text(sources, deck.file, word));

@@ -8,11 +8,11 @@ use std::ops::Range;
 
 use hashbrown::HashSet;
 
+use super::model::Value;
 use super::program::{Definition, Formula, Line, ModelLine, Program};
 use super::remarks::Remarks;
-use super::model::Value;
-use crate::base::notice::Notice;
 use crate::base::names::Name;
+use crate::base::notice::Notice;
 use crate::base::span::Span;
 use crate::base::table::Id;
 use crate::netlist::model::{PartClass, Reading};
