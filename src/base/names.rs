@@ -18,6 +18,14 @@ pub(crate) struct Names {
     seed: DefaultHashBuilder,
 }
 
+impl Name {
+    /// The number, from 0: for lists with one row a name.
+    #[must_use]
+    pub(crate) fn index(self) -> usize {
+        self.0 as usize
+    }
+}
+
 impl Names {
     /// The number of `name`, new where it was not there.
     pub(crate) fn intern(&mut self, name: &str) -> Name {

@@ -38,6 +38,11 @@ impl<T> Table<T> {
         Self { rows: Vec::new() }
     }
 
+    /// Makes room for `more` rows.
+    pub(crate) fn reserve(&mut self, more: usize) {
+        self.rows.reserve_exact(more);
+    }
+
     /// Adds a row and names it.
     pub(crate) fn push(&mut self, row: T) -> Id<T> {
         self.rows.push(row);

@@ -5,19 +5,18 @@ use hashbrown::{HashMap, HashSet};
 use super::limits::Limits;
 use super::model::{BlockType, Circuit, Coupling, Element, Model, Net, Parameter, Sheet, Value};
 use super::models;
+use super::nets::{GROUND, Naming, net};
 use super::params::{Env, Evaluator};
 use super::plan::Plan;
 use super::program::{Definition, ModelLine, Program, Scope};
 use super::remarks::{Remarks, Topic};
 use super::template::{Amount, Local, Part, Shared, Tail, Template};
 use super::value;
-use crate::base::names::{Name, Names};
+use crate::base::names::Name;
 use crate::base::notice::{Notice, Severity};
-use crate::base::quantity::Ohms;
 use crate::base::sources::Sources;
 use crate::base::span::{FileId, Span};
 use crate::base::table::Id;
-use crate::netlist::model::{PartClass, Reading};
 
 /// A board, flat.
 #[derive(Debug)]
@@ -36,9 +35,6 @@ pub(crate) enum Board {
     /// A definition that nobody instantiates; its ports lead off the board.
     Definition(Id<Definition>),
 }
-
-/// Row 0 of the nets: node `0`.
-const GROUND: usize = 0;
 
 /// Expands `board`, leaving the definitions in `closed` and the undefined ones as blocks.
 ///
@@ -82,57 +78,35 @@ pub(super) fn expand(
     Ok(expander.finish())
 }
 
-/// How the circuit gets its names.
-pub(super) enum Naming {
-    /// It takes over all names of the program: one copy, no look-ups.
-    All(Names),
-    /// It takes over the names that it uses: for a small part of a large program.
-    Used(Names, HashMap<Name, Name>),
-}
-
-impl Naming {
-    fn name(&mut self, program: &Program, name: Name) -> Name {
-        match self {
-            Self::All(_) => name,
-            Self::Used(names, map) => *map.entry(name).or_insert_with(|| names.intern(program.names.text(name))),
-        }
-    }
-
-    fn intern(&mut self, text: &str) -> Name {
-        match self {
-            Self::All(names) | Self::Used(names, _) => names.intern(text),
-        }
-    }
-}
-
-struct Expander<'a> {
-    program: &'a Program,
-    sources: &'a Sources,
-    closed: &'a HashSet<Id<Definition>>,
-    plan: Plan,
-    names: Naming,
-    circuit: Circuit,
-    evaluator: Evaluator<'a>,
+/// The circuit under way.
+pub(super) struct Expander<'a> {
+    pub(super) program: &'a Program,
+    pub(super) sources: &'a Sources,
+    pub(super) closed: &'a HashSet<Id<Definition>>,
+    pub(super) plan: Plan,
+    pub(super) names: Naming,
+    pub(super) circuit: Circuit,
+    pub(super) evaluator: Evaluator<'a>,
     /// The port nets and shared nets of the instances under way, innermost last.
-    nets: Vec<Id<Net>>,
-    globals: HashMap<Name, Id<Net>>,
-    models: HashMap<Id<ModelLine>, Id<Model>>,
-    blocks: HashMap<(Name, Option<Id<Definition>>), Id<BlockType>>,
+    pub(super) nets: Vec<Id<Net>>,
+    pub(super) globals: HashMap<Name, Id<Net>>,
+    pub(super) models: HashMap<Id<ModelLine>, Id<Model>>,
+    pub(super) blocks: HashMap<(Name, Option<Id<Definition>>), Id<BlockType>>,
     /// What `gnd` is, once it was met.
-    gnd: Option<Id<Net>>,
-    gnd_span: Option<Span>,
-    remarks: Remarks,
+    pub(super) gnd: Option<Id<Net>>,
+    pub(super) gnd_span: Option<Span>,
+    pub(super) remarks: Remarks,
 }
 
 /// Where the nets of one instance stand.
 #[derive(Clone, Copy)]
-struct Frame {
-    sheet: Id<Sheet>,
+pub(super) struct Frame {
+    pub(super) sheet: Id<Sheet>,
     /// Its own nets in the circuit: the first one.
-    own: usize,
+    pub(super) own: usize,
     /// Its shared nets in [`Expander::nets`]: the first one.
-    shared: usize,
-    env: Env,
+    pub(super) shared: usize,
+    pub(super) env: Env,
 }
 
 impl<'a> Expander<'a> {
@@ -169,27 +143,14 @@ impl<'a> Expander<'a> {
         self.scope(scope, top, 0, env)
     }
 
-    /// The net that `name` means in every scope, if it is node `0` or named by `.global`.
-    fn fixed(&mut self, name: Name, span: Span) -> Option<Id<Net>> {
-        if self.program.names.text(name) == "0" {
-            return Some(Id::new(GROUND));
-        }
-        self.program.globals.contains(&name).then(|| self.global(name, span))
-    }
-
-    fn global(&mut self, name: Name, span: Span) -> Id<Net> {
-        if let Some(&net) = self.globals.get(&name) {
-            return net;
-        }
-        let own = self.names.name(self.program, name);
-        let row = Net { global: true, ..net(own, Id::new(0), span) };
-        let id = self.circuit.nets.push(row);
-        self.globals.insert(name, id);
-        id
-    }
-
     /// Expands the elements of `scope` onto `sheet`; its ports' nets stand at `ports` in the stack of nets.
-    fn scope(&mut self, scope: Id<Scope>, sheet: Id<Sheet>, ports: usize, env: Env) -> Result<(), Box<Notice>> {
+    pub(super) fn scope(
+        &mut self,
+        scope: Id<Scope>,
+        sheet: Id<Sheet>,
+        ports: usize,
+        env: Env,
+    ) -> Result<(), Box<Notice>> {
         let program = self.program;
         let template: &'a Template = &program.templates[Id::new(scope.index())];
         let own = self.circuit.nets.len();
@@ -210,9 +171,9 @@ impl<'a> Expander<'a> {
         let mut ids = Vec::new();
         for part in &template.parts {
             let element = Id::new(self.circuit.elements.len());
-            match part.definition {
-                Some(id) if part.fitted && !self.closed.contains(&id) => self.instance(template, part, id, frame)?,
-                _ => self.element(template, part, frame)?,
+            match part.opened(program, self.closed) {
+                Some(id) => self.instance(template, part, id, frame)?,
+                None => self.element(template, part, frame)?,
             }
             if !template.couplings.is_empty() {
                 ids.push(element);
@@ -232,145 +193,6 @@ impl<'a> Expander<'a> {
         }
         self.nets.truncate(frame.shared);
         Ok(())
-    }
-
-    /// Node 0, which takes the name under which it is met first.
-    fn ground(&mut self, spelling: &str, span: Span) -> Id<Net> {
-        let id = Id::new(GROUND);
-        if self.circuit.nets[id].span.len == 0 {
-            self.circuit.nets[id].span = span;
-            self.circuit.nets[id].name = self.names.intern(spelling);
-        }
-        id
-    }
-
-    fn gnd(&mut self, span: Span) -> Id<Net> {
-        if let Some(net) = self.gnd {
-            return net;
-        }
-        let spelling = self.sources.slice(span);
-        let net = if self.plan.between_grounds.is_some() {
-            let name = self.names.intern(spelling);
-            self.circuit.nets.push(Net { global: true, ..net(name, Id::new(0), span) })
-        } else {
-            self.ground(spelling, span)
-        };
-        self.gnd = Some(net);
-        self.gnd_span = Some(span);
-        net
-    }
-
-    fn net(&self, local: Local, frame: Frame) -> Id<Net> {
-        match local.index() {
-            (index, true) => self.nets[frame.shared + index],
-            (index, false) => Id::new(frame.own + index),
-        }
-    }
-
-    fn instance(
-        &mut self,
-        template: &'a Template,
-        part: &'a Part,
-        id: Id<Definition>,
-        frame: Frame,
-    ) -> Result<(), Box<Notice>> {
-        let program = self.program;
-        let definition = &program.definitions[id];
-        let ports = self.nets.len();
-        self.push_ports(template, part, definition, frame);
-        let name = self.names.name(program, part.refdes);
-        let sheet = self.circuit.sheets.push(Sheet { name, parent: frame.sheet, span: Some(part.span) });
-        self.check_ports(definition, part, ports, frame)?;
-        let waits = self.plan.row(definition.scope).is_some_and(|row| row.waits);
-        let mark = self.evaluator.mark();
-        let env = if waits {
-            let outer = self.evaluator.around(frame.env, program.scopes[definition.scope].parent);
-            let mut overrides = Vec::new();
-            for tail in tails(template, part) {
-                overrides.push((tail.key, self.amount(frame.env, tail.value)?));
-            }
-            self.evaluator.enter(outer, definition.scope, overrides)
-        } else {
-            Env::TOP
-        };
-        self.scope(definition.scope, sheet, ports, env)?;
-        self.evaluator.release(mark);
-        self.nets.truncate(ports);
-        Ok(())
-    }
-
-    /// Puts the outer nets of an instance's ports on the stack, those of left-out optional ports included.
-    fn push_ports(&mut self, template: &Template, part: &Part, definition: &Definition, frame: Frame) {
-        for &local in pins(template, part) {
-            let net = self.net(local, frame);
-            self.nets.push(net);
-        }
-        let required = definition.ports.len() - definition.optional.len();
-        for port in usize::from(part.pin_count)..definition.ports.len() {
-            let default = port.checked_sub(required).and_then(|at| definition.optional.get(at));
-            let net = match default {
-                Some(&name) => match self.fixed(name, definition.span) {
-                    Some(net) => net,
-                    None => self.global(name, definition.span),
-                },
-                None => Id::new(GROUND),
-            };
-            self.nets.push(net);
-        }
-    }
-
-    /// Ports that are one net inside, or a global net, say something about the nets outside.
-    fn check_ports(
-        &mut self,
-        definition: &'a Definition,
-        part: &Part,
-        ports: usize,
-        frame: Frame,
-    ) -> Result<(), Box<Notice>> {
-        for &port in &definition.odd_ports {
-            let port = port as usize;
-            let (name, outer) = (definition.ports[port], self.nets[ports + port]);
-            let net_name = |this: &Self, net: Id<Net>| this.names_text(this.circuit.nets[net].name).to_owned();
-            if let Some(fixed) = self.fixed(name, definition.span) {
-                if fixed != outer {
-                    let topic = if fixed.index() == GROUND { Topic::GroundPortLeads } else { Topic::GlobalPortLeads };
-                    self.remarks.add(topic, part.span, &net_name(self, outer));
-                }
-                continue;
-            }
-            // A second port of the same name: inside, both nets are one.
-            let first = definition.ports.iter().position(|&first| first == name).unwrap_or(port);
-            let inner = self.nets[ports + first];
-            if first == port || inner == outer {
-                continue;
-            }
-            self.remarks.add(Topic::JoinedPorts, part.span, &net_name(self, outer));
-            let refdes = format!("{}:{}", self.program.names.text(part.refdes), self.program.names.text(name));
-            let refdes = self.names.intern(&refdes);
-            let first_pin = self.circuit.pins.len() as u32;
-            self.circuit.pins.extend([inner, outer]);
-            self.circuit.elements.push(Element {
-                refdes,
-                sheet: frame.sheet,
-                span: part.span,
-                class: PartClass::NetTie,
-                reading: Reading::Spice,
-                first_pin,
-                pin_count: 2,
-                fitted: true,
-                value: Value::Ohms(Ohms(0.0)),
-                model: None,
-                part_type: None,
-                block: None,
-            });
-        }
-        Ok(())
-    }
-
-    fn names_text(&self, name: Name) -> &str {
-        match &self.names {
-            Naming::All(names) | Naming::Used(names, _) => names.text(name),
-        }
     }
 
     fn element(&mut self, template: &'a Template, part: &'a Part, frame: Frame) -> Result<(), Box<Notice>> {
@@ -451,7 +273,7 @@ impl<'a> Expander<'a> {
         Ok(())
     }
 
-    fn amount(&mut self, env: Env, amount: Amount) -> Result<Option<f64>, Box<Notice>> {
+    pub(super) fn amount(&mut self, env: Env, amount: Amount) -> Result<Option<f64>, Box<Notice>> {
         match amount {
             Amount::Known(value) => Ok(Some(value)),
             Amount::Formula(formula) => self.evaluator.value(env, formula),
@@ -494,6 +316,7 @@ impl<'a> Expander<'a> {
             || program.definitions().map(|(_, definition)| program.names.text(definition.name)),
             || program.models.iter().map(|(_, model)| program.names.text(model.name)),
         );
+        notices.splice(0..0, std::mem::take(&mut self.plan.problems));
         if let Some(span) = self.gnd_span {
             notices.push(match self.plan.between_grounds {
                 None => Notice::at(Severity::Note, span, "GND is taken as node 0"),
@@ -508,14 +331,10 @@ impl<'a> Expander<'a> {
     }
 }
 
-fn net(name: Name, sheet: Id<Sheet>, span: Span) -> Net {
-    Net { name, sheet, span, global: false, port: false, unread: None }
-}
-
-fn pins<'a>(template: &'a Template, part: &Part) -> &'a [Local] {
+pub(super) fn pins<'a>(template: &'a Template, part: &Part) -> &'a [Local] {
     &template.pins[part.first_pin as usize..part.first_pin as usize + usize::from(part.pin_count)]
 }
 
-fn tails<'a>(template: &'a Template, part: &Part) -> &'a [Tail] {
+pub(super) fn tails<'a>(template: &'a Template, part: &Part) -> &'a [Tail] {
     &template.tails[part.first_tail as usize..(part.first_tail + part.tail_count) as usize]
 }

@@ -5,15 +5,16 @@ use std::path::{Path, PathBuf};
 
 use hashbrown::{HashMap, HashSet};
 
+use super::condition::Condition;
 use super::header;
-use super::include::{Door, Found, Refusal};
-use super::limits::{Limits, passed};
-use super::params::Evaluator;
+use super::include::Door;
+use super::limits::Limits;
 use super::program::{Definition, Formula, Line, ModelLine, Program, Scope, pairs, text};
 use super::remarks::{Remarks, Topic};
-use super::sections::{Request, Sections, request};
+use super::sections::Sections;
+use super::subckt::Open;
 use crate::base::names::Name;
-use crate::base::notice::{Notice, Severity};
+use crate::base::notice::Notice;
 use crate::base::sources::Sources;
 use crate::base::span::{FileId, Span};
 use crate::base::table::Id;
@@ -31,49 +32,28 @@ pub(crate) struct Root {
 
 /// Gathers the lines of `roots` and of everything they include.
 pub(super) struct Gatherer<'a> {
-    sources: &'a mut Sources,
-    door: Door,
-    limits: &'a Limits,
-    program: Program,
+    pub(super) sources: &'a mut Sources,
+    pub(super) door: Door,
+    pub(super) limits: &'a Limits,
+    pub(super) program: Program,
     /// Decks of included files by resolved path.
-    read: HashMap<PathBuf, usize>,
+    pub(super) read: HashMap<PathBuf, usize>,
     /// What stands in which scope already: scope, deck, section.
-    spliced: HashSet<(Id<Scope>, usize, Option<Name>)>,
+    pub(super) spliced: HashSet<(Id<Scope>, usize, Option<Name>)>,
     /// Files under way, for cycles.
-    under_way: Vec<(usize, Option<Name>)>,
-    open: Vec<Open>,
-    bytes: usize,
-    includes: usize,
-    remarks: Remarks,
-}
-
-/// A `.subckt` without its `.ends` so far.
-struct Open {
-    definition: Id<Definition>,
-    scope: Id<Scope>,
-    /// How many lines its body had when the first definition inside it opened.
-    first_inner: Option<usize>,
+    pub(super) under_way: Vec<(usize, Option<Name>)>,
+    pub(super) open: Vec<Open>,
+    pub(super) bytes: usize,
+    pub(super) includes: usize,
+    pub(super) remarks: Remarks,
 }
 
 /// Where a deck lies.
 #[derive(Clone)]
-struct Place {
-    deck: usize,
-    folder: Option<PathBuf>,
+pub(super) struct Place {
+    pub deck: usize,
+    pub folder: Option<PathBuf>,
 }
-
-/// An `.if` that is open.
-struct Condition {
-    /// This branch's lines count.
-    active: bool,
-    /// An earlier branch counted.
-    taken: bool,
-    /// Nobody can tell which branch counts.
-    unknown: bool,
-}
-
-/// Ports that a subcircuit may have; the largest public one has 1,134.
-pub(super) const MOST_PORTS: usize = u16::MAX as usize;
 
 type Outcome = Result<(), Box<Notice>>;
 
@@ -145,7 +125,7 @@ impl<'a> Gatherer<'a> {
         root.folder.as_ref()?.join(name).canonicalize().ok()
     }
 
-    fn walk(&mut self, place: &Place, range: Range<usize>) -> Outcome {
+    pub(super) fn walk(&mut self, place: &Place, range: Range<usize>) -> Outcome {
         let sections = Sections::of(&self.program.decks[place.deck], self.sources);
         let floor = self.open.len();
         let mut conditions: Vec<Condition> = Vec::new();
@@ -177,6 +157,7 @@ impl<'a> Gatherer<'a> {
             match statement.form {
                 StatementForm::Element => self.scope_mut().body.push(line),
                 StatementForm::Unread => self.scope_mut().unread.push(line),
+                StatementForm::Encrypted => self.scope_mut().sealed = true,
                 StatementForm::Subckt => self.subckt(line, statement)?,
                 StatementForm::Ends => self.ends(line, statement, floor),
                 StatementForm::Model => self.model(line, statement),
@@ -211,149 +192,23 @@ impl<'a> Gatherer<'a> {
         Ok(())
     }
 
-    fn scope(&self) -> Id<Scope> {
+    pub(super) fn scope(&self) -> Id<Scope> {
         self.open.last().map_or(Id::new(0), |open| open.scope)
     }
 
-    fn scope_mut(&mut self) -> &mut Scope {
+    pub(super) fn scope_mut(&mut self) -> &mut Scope {
         let scope = self.scope();
         &mut self.program.scopes[scope]
     }
 
     /// The words of `line`, copied: the program changes while they are used.
-    fn words(&self, line: Line) -> (FileId, Vec<Word>) {
+    pub(super) fn words(&self, line: Line) -> (FileId, Vec<Word>) {
         (self.program.file(line), self.program.line(line).1.to_vec())
     }
 
-    fn formula(&mut self, span: Span) -> Id<Formula> {
+    pub(super) fn formula(&mut self, span: Span) -> Id<Formula> {
         self.program.formulas.push(Formula { span })
     }
-
-    // Definitions.
-
-    fn subckt(&mut self, line: Line, statement: Statement) -> Outcome {
-        if self.open.len() >= self.limits.sheet_depth {
-            return Err(passed("nested definitions", self.limits.sheet_depth, "", Some(statement.span)));
-        }
-        let (file, words) = self.words(line);
-        let sources: &Sources = self.sources;
-        let Some(header) = header::split(file, &words, |word| text(sources, file, word)) else {
-            self.scope_mut().unread.push(line);
-            return Ok(());
-        };
-        let names = &mut self.program.names;
-        let name = names.intern(header.name);
-        let required = header.ports.iter().copied();
-        let ports: Vec<Name> =
-            required.chain(header.optional.iter().map(|&(port, _)| port)).map(|port| names.intern(port)).collect();
-        let optional = header.optional.iter().map(|(_, net)| names.intern(net)).collect();
-        let defaults: Vec<(Name, Span)> =
-            header.defaults.iter().map(|&(key, value)| (names.intern(key), value)).collect();
-        let shown = header.name;
-        if ports.is_empty() {
-            self.remarks.add(Topic::NoPorts, statement.span, shown);
-        }
-        if header.ports.contains(&"0") {
-            self.remarks.add(Topic::GroundPort, statement.span, shown);
-        }
-        let mut seen = HashSet::new();
-        if ports.iter().any(|&port| !seen.insert(port)) {
-            self.remarks.add(Topic::DuplicatePorts, statement.span, shown);
-        }
-        if ports.len() > MOST_PORTS {
-            return Err(passed("ports of a subcircuit", MOST_PORTS, "", Some(statement.span)));
-        }
-        let defaults: Vec<(Name, Id<Formula>)> =
-            defaults.into_iter().map(|(key, span)| (key, self.formula(span))).collect();
-        let outer = self.scope();
-        let scope = self.program.scopes.push(Scope::new(outer, Some(Id::new(self.program.definitions.len()))));
-        for &(key, formula) in &defaults {
-            self.program.parameters.insert((scope, key), formula);
-        }
-        let span = statement.span;
-        let (hidden, odd_ports) = (false, Vec::new());
-        let definition =
-            self.program.definitions.push(Definition { name, ports, optional, defaults, span, scope, hidden, odd_ports });
-        self.define(outer, definition);
-        let length = self.program.scopes[outer].body.len();
-        if let Some(open) = self.open.last_mut() {
-            open.first_inner.get_or_insert(length);
-        }
-        self.open.push(Open { definition, scope, first_inner: None });
-        Ok(())
-    }
-
-    /// Makes `definition` known in `scope`, unless another of its name is.
-    fn define(&mut self, scope: Id<Scope>, definition: Id<Definition>) {
-        let name = self.program.definitions[definition].name;
-        let first = *self.program.defined.entry((scope, name)).or_insert(definition);
-        if first != definition {
-            self.program.definitions[definition].hidden = true;
-            let span = self.program.definitions[definition].span;
-            self.remarks.add(Topic::DefinedTwice, span, self.program.names.text(name));
-        }
-    }
-
-    fn ends(&mut self, line: Line, statement: Statement, floor: usize) {
-        let (file, words) = self.words(line);
-        let name = words.get(1).map(|&word| text(self.sources, file, word));
-        let named = |open: &Open, name: &str| {
-            let own = self.program.definitions[open.definition].name;
-            self.program.names.text(own).eq_ignore_ascii_case(name)
-        };
-        let inner = self.open.get(floor..).unwrap_or(&[]);
-        if inner.is_empty() {
-            self.remarks.add(Topic::StrayEnds, statement.span, name.unwrap_or(""));
-            return;
-        }
-        let depth = match name {
-            Some(name) => inner.iter().rev().position(|open| named(open, name)),
-            None => Some(0),
-        };
-        if depth.is_none() {
-            self.remarks.add(Topic::OtherEnds, statement.span, name.unwrap_or(""));
-        }
-        for _ in 0..depth.unwrap_or(0) {
-            self.close_unclosed();
-        }
-        self.open.pop();
-    }
-
-    /// Closes the innermost definition whose `.ends` is missing. Where other definitions follow inside it, it ended
-    /// before the first of them: those, and what follows, belong to the scope around it.
-    fn close_unclosed(&mut self) {
-        let Some(open) = self.open.pop() else { return };
-        let definition = &self.program.definitions[open.definition];
-        let (name, span) = (definition.name, definition.span);
-        let message = format!("the subcircuit {} is never closed by .ends", self.program.names.text(name));
-        let mut notice = Notice::at(Severity::Warning, span, message);
-        let outer = self.program.scopes[open.scope].parent;
-        match open.first_inner {
-            Some(length) if length > 0 => {
-                notice = notice.hint("taken to end before the next .subckt; write .ends where it ends");
-                let moved = self.program.scopes[open.scope].body.split_off(length);
-                self.program.scopes[outer].body.extend(moved);
-                let inner: Vec<_> = (open.definition.index() + 1..self.program.definitions.len())
-                    .map(Id::<Definition>::new)
-                    .filter(|&id| self.program.scopes[self.program.definitions[id].scope].parent == open.scope)
-                    .collect();
-                for id in inner {
-                    let scope = self.program.definitions[id].scope;
-                    self.program.scopes[scope].parent = outer;
-                    self.define(outer, id);
-                }
-                let models: Vec<_> = self.program.models.iter().filter(|(_, model)| model.scope == open.scope).collect();
-                let models: Vec<_> = models.into_iter().map(|(id, model)| (id, model.name)).collect();
-                for (id, name) in models {
-                    self.program.modelled.entry((outer, name)).or_insert(id);
-                }
-            }
-            _ => notice = notice.hint("taken to end with the file; write .ends where it ends"),
-        }
-        self.program.notices.push(notice);
-    }
-
-    // Models, parameters and global nets.
 
     fn model(&mut self, line: Line, statement: Statement) {
         let (file, words) = self.words(line);
@@ -388,175 +243,5 @@ impl<'a> Gatherer<'a> {
             let name = self.program.names.intern(text(self.sources, file, word));
             self.program.globals.insert(name);
         }
-    }
-
-    // Conditions.
-
-    /// Handles `.if` and kin; whether `statement` was one.
-    fn condition(&mut self, open: &mut Vec<Condition>, line: Line, statement: Statement) -> Result<bool, Box<Notice>> {
-        match statement.form {
-            StatementForm::If => {
-                if open.len() >= self.limits.sheet_depth {
-                    return Err(passed("nested .if", self.limits.sheet_depth, "", Some(statement.span)));
-                }
-                let dead = open.iter().any(|condition| !condition.active);
-                let value = if dead { Some(false) } else { self.decide(line, statement)? };
-                open.push(Condition {
-                    active: value == Some(true),
-                    // Inside a branch that does not count, no branch does.
-                    taken: dead || value == Some(true),
-                    unknown: value.is_none(),
-                });
-            }
-            StatementForm::ElseIf | StatementForm::Else => {
-                let Some(last) = open.last() else { return Ok(true) };
-                let value = if last.taken || last.unknown {
-                    Some(false)
-                } else if statement.form == StatementForm::Else {
-                    Some(true)
-                } else {
-                    self.decide(line, statement)?
-                };
-                if let Some(last) = open.last_mut() {
-                    last.active = value == Some(true);
-                    last.taken |= last.active;
-                    last.unknown |= value.is_none();
-                }
-            }
-            StatementForm::EndIf => {
-                open.pop();
-            }
-            _ => return Ok(false),
-        }
-        Ok(true)
-    }
-
-    /// Whether the condition on `line` is true; none where it is not known.
-    fn decide(&mut self, line: Line, statement: Statement) -> Result<Option<bool>, Box<Notice>> {
-        let (file, words) = self.words(line);
-        let span = header::span(file, &words, 1..words.len());
-        let mut evaluator = Evaluator::new(&self.program, self.sources, self.limits);
-        let value = evaluator.constant(self.scope(), span)?;
-        if value.is_none() {
-            self.remarks.add(Topic::Undecided, statement.span, "");
-        }
-        Ok(value.map(|value| value != 0.0))
-    }
-
-    // Included files.
-
-    fn include(&mut self, place: &Place, line: Line, statement: Statement, sections: bool) -> Outcome {
-        let (file, words) = self.words(line);
-        let request = request(self.sources, file, &words, sections);
-        let Some(Request { path, section }) = request else {
-            self.scope_mut().unread.push(line);
-            return Ok(());
-        };
-        self.includes += 1;
-        if self.includes > self.limits.include_count {
-            return Err(passed("included files", self.limits.include_count, "", Some(statement.span)));
-        }
-        let found = match self.door.find(&path, place.folder.as_deref()) {
-            Ok(found) => found,
-            Err(refusal) => {
-                self.missing(&path, refusal, statement.span);
-                return Ok(());
-            }
-        };
-        let Some(deck) = self.deck(&path, &found, statement.span)? else { return Ok(()) };
-        let section = section.map(|section| self.program.names.intern(&section));
-        self.splice(&Place { deck, folder: Some(found.folder) }, section, statement.span)
-    }
-
-    /// Walks the file at `place`, or one section of it, where it is included.
-    fn splice(&mut self, place: &Place, section: Option<Name>, span: Span) -> Outcome {
-        if self.under_way.contains(&(place.deck, section)) {
-            let name = self.sources.name(self.program.decks[place.deck].file);
-            let message = format!("limit passed: include cycle ({name} includes itself, directly or through other files)");
-            return Err(Box::new(Notice::at(Severity::Error, span, message).hint("remove one of the include lines")));
-        }
-        if self.under_way.len() > self.limits.include_depth {
-            return Err(passed("include depth", self.limits.include_depth, "", Some(span)));
-        }
-        if !self.spliced.insert((self.scope(), place.deck, section)) {
-            let name = self.sources.name(self.program.decks[place.deck].file);
-            self.remarks.add(Topic::FileTwice, span, name);
-            return Ok(());
-        }
-        self.take_bytes(self.program.decks[place.deck].file, Some(span))?;
-        let deck = &self.program.decks[place.deck];
-        let range = match section {
-            None => 0..deck.statements.len(),
-            Some(section) => {
-                let sections = Sections::of(deck, self.sources);
-                let wanted = self.program.names.text(section);
-                match sections.find(wanted) {
-                    Some(range) => range,
-                    None => {
-                        let file = self.sources.name(deck.file);
-                        let message = format!("{file} has no section {wanted}: what it would define is unknown");
-                        let mut notice = Notice::at(Severity::Warning, span, message);
-                        if let Some(close) = super::suggest::closest(wanted, sections.names()) {
-                            notice = notice.hint(format!("did you mean {close}?"));
-                        }
-                        self.program.notices.push(notice);
-                        self.program.missing_files += 1;
-                        return Ok(());
-                    }
-                }
-            }
-        };
-        self.under_way.push((place.deck, section));
-        self.walk(place, range)?;
-        self.under_way.pop();
-        Ok(())
-    }
-
-    /// The deck of a file that was let in, read at its first use; none where it is no netlist.
-    fn deck(&mut self, path: &str, found: &Found, span: Span) -> Result<Option<usize>, Box<Notice>> {
-        if let Some(&deck) = self.read.get(&found.path) {
-            return Ok(Some(deck));
-        }
-        let left = self.limits.input_bytes.saturating_sub(self.bytes);
-        let bytes = match self.door.read(found, left) {
-            Ok(bytes) => bytes,
-            Err(Refusal::TooLong) => {
-                return Err(passed("input bytes", self.limits.input_bytes, " in all files together", Some(span)));
-            }
-            Err(refusal) => {
-                self.missing(path, refusal, span);
-                return Ok(None);
-            }
-        };
-        let Some(text) = self.decode(path, &bytes, span) else { return Ok(None) };
-        let shown = self.shown(path, span.file);
-        let file = self.sources.add(shown, text);
-        let deck = netlist::read(file, self.sources.text(file));
-        self.program.notices.extend(deck.notices.iter().cloned());
-        self.program.decks.push(deck);
-        let deck = self.program.decks.len() - 1;
-        self.read.insert(found.path.clone(), deck);
-        Ok(Some(deck))
-    }
-
-    /// What messages call the file `path` that a line of `from` includes.
-    fn shown(&self, path: &str, from: FileId) -> String {
-        let folder = Path::new(self.sources.name(from)).parent().unwrap_or(Path::new(""));
-        folder.join(path.replace('\\', "/")).display().to_string()
-    }
-
-    fn missing(&mut self, path: &str, refusal: Refusal, span: Span) {
-        self.program.missing_files += 1;
-        let reason = refusal.reason();
-        let message = format!("{path} is not read, {reason}: models and subcircuits that it defines are unknown");
-        self.program.notices.push(Notice::at(Severity::Warning, span, message).hint(refusal.hint()));
-    }
-
-    fn take_bytes(&mut self, file: FileId, span: Option<Span>) -> Outcome {
-        self.bytes += self.sources.text(file).len();
-        if self.bytes > self.limits.input_bytes {
-            return Err(passed("input bytes", self.limits.input_bytes, " in all files together", span));
-        }
-        Ok(())
     }
 }

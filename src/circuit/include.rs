@@ -123,7 +123,8 @@ impl Door {
     }
 
     fn admit(&self, path: &Path) -> Result<Found, Refusal> {
-        let inside = |path: &Path| self.folders.iter().any(|(given, real)| path.starts_with(given) || path.starts_with(real));
+        let inside =
+            |path: &Path| self.folders.iter().any(|(given, real)| path.starts_with(given) || path.starts_with(real));
         if !inside(path) {
             return Err(Refusal::Outside);
         }

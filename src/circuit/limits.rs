@@ -40,8 +40,14 @@ impl Limits {
         Self { sheet_depth: 8, elements: 4_000, expression_steps: 100_000, ..Self::BOARD };
 }
 
+/// The error about one expression that is nested too deeply or too long for the reader of expressions.
+pub(super) fn unreadable(place: Span) -> Box<Notice> {
+    let message = "limit passed: expression depth or steps of one expression";
+    Box::new(Notice::at(Severity::Error, place, message).hint("split the expression into several parameters"))
+}
+
 /// The error that names the limit `what`, passed at `place`.
-pub(crate) fn passed(what: &str, limit: usize, unit: &str, place: Option<Span>) -> Box<Notice> {
+pub(super) fn passed(what: &str, limit: usize, unit: &str, place: Option<Span>) -> Box<Notice> {
     let message = format!("limit passed: {what} (at most {limit}{unit})");
     Box::new(match place {
         Some(place) => Notice::at(Severity::Error, place, message),

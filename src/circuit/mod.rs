@@ -7,19 +7,27 @@
 #![allow(dead_code)]
 
 mod compile;
+mod condition;
+mod coupling;
 mod expand;
 mod gather;
 mod header;
 mod include;
+mod instance;
 mod limits;
 pub(crate) mod model;
 mod models;
+mod nets;
 mod params;
+mod part;
 mod plan;
+mod pool;
 pub(crate) mod program;
 mod remarks;
 mod sections;
 mod source;
+mod splice;
+mod subckt;
 mod suggest;
 mod template;
 mod value;
@@ -54,7 +62,7 @@ pub(crate) fn load(
     limits: &Limits,
 ) -> Result<Program, Box<Notice>> {
     let mut program = gather::Gatherer::new(sources, roots, allowed, limits).run(roots)?;
-    compile::compile(&mut program, sources)?;
+    compile::compile(&mut program, sources, limits)?;
     Ok(program)
 }
 
@@ -91,8 +99,8 @@ pub(crate) fn expand(
     limits: &Limits,
 ) -> Result<Expanded, Box<Notice>> {
     let naming = match board {
-        Board::Top => expand::Naming::All(program.names.clone()),
-        Board::Definition(_) => expand::Naming::Used(Names::default(), HashMap::new()),
+        Board::Top => nets::Naming::All(program.names.clone()),
+        Board::Definition(_) => nets::Naming::Used(Names::default(), HashMap::new()),
     };
     expand::expand(program, sources, board, closed, naming, limits)
 }
@@ -105,7 +113,10 @@ pub(crate) fn flatten(
     definition: Id<Definition>,
     closed: &Closed,
 ) -> Option<Circuit> {
-    let naming = expand::Naming::Used(Names::default(), HashMap::new());
+    let naming = nets::Naming::Used(Names::default(), HashMap::new());
     let board = Board::Definition(definition);
     expand::expand(program, sources, board, closed, naming, &Limits::DEFINITION).ok().map(|flat| flat.circuit)
 }
+
+#[cfg(test)]
+mod tests;

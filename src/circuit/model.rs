@@ -4,7 +4,9 @@
 //! (arrays, relays and other known blocks) and the undefined ones: those stay one element with a [`BlockType`].
 //! What this stage has proved, and later stages rely on: every pin of an element names a net of the table; pins of
 //! one element stand in the order of the netlist; a coupling's two inductors exist; a sheet's parent stands before it.
-//! Node `0` is always a net, number 0 of the table, and `gnd` joins it unless the netlist uses both.
+//! Node `0` is always a net, number 0 of the table, and `gnd` joins it unless a part stands between the two; it bears
+//! the name under which it stands first. Ports of one name in a definition join the nets outside: each such joint is a
+//! [`PartClass::NetTie`] called `X1:PORT`. A pin that leads nowhere (`?`, `NC`) has a net of its own.
 
 use crate::base::names::{Name, Names};
 use crate::base::quantity::{Amps, Farads, Henries, Ohms, Volts};
@@ -99,7 +101,7 @@ pub(crate) enum Value {
     Henries(Henries),
     /// DC value of a voltage source that does not change.
     Volts(Volts),
-    /// Lowest and highest value of a voltage source that moves (PULSE, SIN, PWL, …); either may be unknown.
+    /// Lowest and highest value of a voltage source that moves (PULSE, SIN, PWL, …); not a number where unknown.
     VoltsBetween(Volts, Volts),
     /// DC value of a current source.
     Amps(Amps),

@@ -8,6 +8,7 @@ use crate::base::notice::Notice;
 use crate::base::sources::Sources;
 use crate::base::span::Span;
 use crate::base::table::Id;
+use crate::netlist::element::ModelHint;
 use crate::netlist::model::{Word, WordForm};
 
 /// How many models may rest on each other by `ako:`.
@@ -41,6 +42,39 @@ pub(super) fn read(
     model.parameters.sort_by(|(a, _), (b, _)| a.cmp(b));
     model.parameters.dedup_by(|(later, _), (kept, _)| later == kept);
     Ok(model)
+}
+
+/// What the model at `line` describes, as far as the reading of a line asks.
+pub(super) fn hint(program: &Program, sources: &Sources, line: Id<ModelLine>) -> ModelHint {
+    let mut at = line;
+    for _ in 0..AKO_DEPTH {
+        let model = &program.models[at];
+        let file = program.file(model.line);
+        let words = program.line(model.line).1;
+        let word = |row: usize| words.get(row).map_or(String::new(), |&word| lower(sources, file, word));
+        let base = base(program, sources, at);
+        let type_word = if word(2).starts_with("ako:") { word(3) } else { word(2) };
+        match (type_word.as_str(), base) {
+            ("" | "(", Some(base)) => at = base,
+            (word, _) => return hint_of(word),
+        }
+    }
+    ModelHint::Other
+}
+
+fn hint_of(word: &str) -> ModelHint {
+    match word {
+        "r" | "res" => ModelHint::Resistor,
+        "c" | "cap" => ModelHint::Capacitor,
+        "l" | "ind" => ModelHint::Inductor,
+        "d" => ModelHint::Diode,
+        "npn" | "pnp" | "lpnp" => ModelHint::Bipolar,
+        "njf" | "pjf" | "nmf" | "pmf" | "gasfet" => ModelHint::Jfet,
+        "nmos" | "pmos" | "vdmos" => ModelHint::Mosfet,
+        "sw" | "vswitch" => ModelHint::VoltageSwitch,
+        "csw" | "iswitch" => ModelHint::CurrentSwitch,
+        _ => ModelHint::Other,
+    }
 }
 
 /// The model that the `ako:` of `line` names.
@@ -96,13 +130,13 @@ fn kind(word: &str, p_channel: bool) -> Option<ModelKind> {
         "l" | "ind" => ModelKind::Inductor,
         "d" => ModelKind::Diode,
         "npn" => ModelKind::Npn,
-        "pnp" => ModelKind::Pnp,
-        "nmos" | "nmf" => ModelKind::Nmos,
-        "pmos" | "pmf" => ModelKind::Pmos,
+        "pnp" | "lpnp" => ModelKind::Pnp,
+        "nmos" => ModelKind::Nmos,
+        "pmos" => ModelKind::Pmos,
         "vdmos" if p_channel => ModelKind::Pmos,
         "vdmos" => ModelKind::Nmos,
-        "njf" => ModelKind::Njf,
-        "pjf" => ModelKind::Pjf,
+        "njf" | "nmf" | "gasfet" => ModelKind::Njf,
+        "pjf" | "pmf" => ModelKind::Pjf,
         "sw" | "vswitch" => ModelKind::VoltageSwitch,
         "csw" | "iswitch" => ModelKind::CurrentSwitch,
         "" => return None,

@@ -8,7 +8,7 @@ use std::rc::Rc;
 
 use hashbrown::HashMap;
 
-use super::limits::{Limits, passed};
+use super::limits::{self, Limits, passed};
 use super::program::{Formula, Program, Scope};
 use super::remarks::{Remarks, Topic};
 use crate::base::names::Name;
@@ -33,7 +33,7 @@ pub(super) struct Evaluator<'a> {
     sources: &'a Sources,
     limits: &'a Limits,
     levels: Vec<Level>,
-    parsed: HashMap<Span, Option<Rc<Expression>>>,
+    parsed: HashMap<Span, Result<Rc<Expression>, bool>>,
     steps: usize,
     depth: usize,
     /// A limit that was passed inside an expression.
@@ -118,7 +118,15 @@ impl<'a> Evaluator<'a> {
         if self.failed.is_some() {
             return None;
         }
-        let expression = self.parse(span)?;
+        let expression = match self.parse(span) {
+            Ok(expression) => expression,
+            Err(limit) => {
+                if limit {
+                    self.failed = Some(limits::unreadable(span));
+                }
+                return None;
+            }
+        };
         self.steps = self.steps.saturating_add(1 + expression.steps());
         if self.steps > self.limits.expression_steps {
             self.failed = Some(passed("expression steps", self.limits.expression_steps, "", Some(span)));
@@ -134,14 +142,20 @@ impl<'a> Evaluator<'a> {
         value
     }
 
-    fn parse(&mut self, span: Span) -> Option<Rc<Expression>> {
+    /// The expression at `span`; an error says whether it passes a limit.
+    fn parse(&mut self, span: Span) -> Result<Rc<Expression>, bool> {
         let sources = self.sources;
-        self.parsed.entry(span).or_insert_with(|| Expression::parse(sources.slice(span)).ok().map(Rc::new)).clone()
+        let parse = || Expression::parse(sources.slice(span)).map(Rc::new).map_err(|error| error.limit);
+        self.parsed.entry(span).or_insert_with(parse).clone()
     }
 
     fn lookup(&mut self, env: Env, text: &str, span: Span) -> Option<f64> {
         let found = self.program.names.get(text).and_then(|name| self.find(env, name).map(|env| (name, env)));
         let Some((name, env)) = found else {
+            // The reader of expressions knows these itself.
+            if ["pi", "true", "false"].iter().any(|known| text.eq_ignore_ascii_case(known)) {
+                return None;
+            }
             self.remarks.add(Topic::UnknownParameter, span, text);
             return None;
         };

@@ -13,6 +13,9 @@ use crate::base::table::Id;
 /// Pins that an element has before they count as elements of their own.
 const PINS_IN_ELEMENT: usize = 4;
 
+/// Lines that could not be read and are shown one by one; the others are counted.
+pub(super) const PROBLEMS: usize = 20;
+
 /// Which definitions are opened, and how large the result gets.
 #[derive(Default)]
 pub(super) struct Plan {
@@ -23,6 +26,8 @@ pub(super) struct Plan {
     pub remarks: Remarks,
     /// Lines of used templates that were not read.
     pub unread_lines: usize,
+    /// The first lines that could not be read as a part.
+    pub problems: Vec<Notice>,
     /// The first element between node `0` and `gnd`.
     pub between_grounds: Option<Span>,
 }
@@ -66,12 +71,14 @@ impl Plan {
         let template: &Template = &program.templates[Id::new(scope.index())];
         self.remarks.merge(&template.remarks);
         self.unread_lines += template.unread_lines;
+        let room = PROBLEMS.saturating_sub(self.problems.len());
+        self.problems.extend(template.problems.iter().take(room).cloned());
         self.between_grounds = self.between_grounds.or(template.between_grounds);
         let mut row = Row { elements: 0, height: 0, waits: template.waits };
         for part in &template.parts {
             let pins = usize::from(part.pin_count) / PINS_IN_ELEMENT;
             row.elements = row.elements.saturating_add(1 + pins);
-            let Some(definition) = part.definition.filter(|id| part.fitted && !closed.contains(id)) else { continue };
+            let Some(definition) = part.opened(program, closed) else { continue };
             let inner = program.definitions[definition].scope;
             if self.path.contains(&definition) {
                 return Err(self.recursion(program, definition, part.span));

@@ -53,11 +53,13 @@ pub(crate) struct Scope {
     pub body: Vec<Line>,
     /// Lines that were not read, or that stand under a condition nobody could decide.
     pub unread: Vec<Line>,
+    /// Part of it is encrypted: the inside is not known.
+    pub sealed: bool,
 }
 
 impl Scope {
     pub(super) fn new(parent: Id<Self>, definition: Option<Id<Definition>>) -> Self {
-        Self { parent, definition, body: Vec::new(), unread: Vec::new() }
+        Self { parent, definition, body: Vec::new(), unread: Vec::new(), sealed: false }
     }
 }
 

@@ -26,7 +26,6 @@ pub(super) enum Topic {
     NoPorts,
     DuplicateDesignator,
     KeptPrefix,
-    NotRead,
     PortCount,
     GroundPortLeads,
     GlobalPortLeads,
@@ -34,6 +33,10 @@ pub(super) enum Topic {
     UndefinedSubcircuit,
     UndefinedModel,
     NoInductor,
+    MilliOrMega,
+    Femto,
+    Iec60062,
+    ExtraWord,
     UnknownValue,
     RestsOnItself,
     UnknownParameter,
@@ -63,7 +66,6 @@ impl Topic {
                 (Warning, "designators that stand more than once: the later parts are called NAME#2, NAME#3 …: {}")
             }
             Self::KeptPrefix => (Note, "an exporter's prefix is kept, because the name without it is taken: {}"),
-            Self::NotRead => (Warning, "lines that could not be read as a part: {}"),
             Self::PortCount => {
                 (Warning, "instances with another number of nodes than their .subckt has ports are kept closed: {}")
             }
@@ -77,6 +79,10 @@ impl Topic {
             }
             Self::UndefinedModel => (Note, "no .model of this name in the files: {}"),
             Self::NoInductor => (Warning, "couplings of inductors that are not there: {}"),
+            Self::MilliOrMega => (Note, "M is milli in SPICE and mega by habit, which is meant? {}"),
+            Self::Femto => (Note, "F on a capacitor is taken as femto, as in SPICE: {}"),
+            Self::Iec60062 => (Note, "a letter in place of the decimal point is read by IEC 60062: {}"),
+            Self::ExtraWord => (Note, "words that mean nothing here are passed over: {}"),
             Self::UnknownValue => (Note, "values that could not be worked out are unknown: {}"),
             Self::RestsOnItself => (Warning, "parameters that rest on themselves have no value: {}"),
             Self::UnknownParameter => (Note, "parameters that nothing gives a value: {}"),

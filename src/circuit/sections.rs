@@ -8,17 +8,20 @@ use crate::base::span::FileId;
 use crate::netlist::model::{Deck, StatementForm, Word, WordForm};
 
 /// The sections of one file.
-pub(super) struct Sections<'a> {
+pub(super) struct Sections {
     /// Name, index of the `.lib` statement, index of the `.endl` statement; by the former.
-    rows: Vec<(&'a str, usize, usize)>,
+    rows: Vec<(String, usize, usize)>,
 }
 
-impl<'a> Sections<'a> {
+impl Sections {
     /// Pairs each `.endl` with the `.lib NAME` that it closes. A `.lib` of one word without an `.endl` includes a
     /// file: both are written alike.
-    pub(super) fn of(deck: &Deck, sources: &'a Sources) -> Self {
+    pub(super) fn of(deck: &Deck, sources: &Sources) -> Self {
         let mut open: Vec<(&str, usize)> = Vec::new();
         let mut rows = Vec::new();
+        if !deck.statements.iter().any(|statement| statement.form == StatementForm::EndLib) {
+            return Self { rows };
+        }
         for (at, statement) in deck.statements.iter().enumerate() {
             let words = deck.words(statement);
             let name = words.get(1).map(|&word| text(sources, deck.file, word));
@@ -31,29 +34,29 @@ impl<'a> Sections<'a> {
                     };
                     if let Some((name, start)) = matching.and_then(|matching| open.get(matching).copied()) {
                         open.truncate(matching.unwrap_or(0));
-                        rows.push((name, start, at));
+                        rows.push((name.to_owned(), start, at));
                     }
                 }
                 _ => {}
             }
         }
-        rows.sort_unstable_by_key(|&(_, start, _)| start);
+        rows.sort_unstable_by_key(|(_, start, _)| *start);
         Self { rows }
     }
 
     /// The `.endl` of the section that opens at statement `start`, if one does.
     pub(super) fn end_of(&self, start: usize) -> Option<usize> {
-        self.rows.binary_search_by_key(&start, |&(_, start, _)| start).ok().map(|row| self.rows[row].2)
+        self.rows.binary_search_by_key(&start, |(_, start, _)| *start).ok().map(|row| self.rows[row].2)
     }
 
     /// The statements of the section `name`.
     pub(super) fn find(&self, name: &str) -> Option<Range<usize>> {
-        self.rows.iter().find(|(own, _, _)| own.eq_ignore_ascii_case(name)).map(|&(_, start, end)| start + 1..end)
+        self.rows.iter().find(|(own, _, _)| own.eq_ignore_ascii_case(name)).map(|(_, start, end)| start + 1..*end)
     }
 
     /// The names of all sections in order.
-    pub(super) fn names(&self) -> impl Iterator<Item = &'a str> {
-        self.rows.iter().map(|&(name, _, _)| name)
+    pub(super) fn names(&self) -> impl Iterator<Item = &str> {
+        self.rows.iter().map(|(name, _, _)| name.as_str())
     }
 }
 

@@ -4,10 +4,15 @@
 //! each instance (letters, values, models, which definition an instance means) is settled here; what depends on
 //! parameters waits as a formula.
 
+use std::ops::Range;
+
+use hashbrown::HashSet;
+
 use super::model::Value;
-use super::program::{Definition, Formula, ModelLine};
+use super::program::{Definition, Formula, Line, ModelLine, Program};
 use super::remarks::Remarks;
 use crate::base::names::Name;
+use crate::base::notice::Notice;
 use crate::base::span::Span;
 use crate::base::table::Id;
 use crate::netlist::model::{PartClass, Reading};
@@ -69,6 +74,12 @@ pub(super) struct Template {
     pub between_grounds: Option<Span>,
     /// What there is to say about the lines.
     pub remarks: Remarks,
+    /// Lines that could not be read as a part, the first of them.
+    pub problems: Vec<Notice>,
+    /// Those lines, while the template is made.
+    pub not_read: Vec<Line>,
+    /// Couplings by index into [`Template::parts`], with the words that they refer to, while the template is made.
+    pub coupled: Vec<(u32, Line, Range<u32>)>,
     /// Whether an element's value or tail waits for a parameter.
     pub waits: bool,
 }
@@ -99,6 +110,17 @@ impl Part {
     /// Whether its word says what it is, not a model: such a part has a block type.
     pub(super) fn is_by_type(&self) -> bool {
         self.class == PartClass::Block || self.reading != Reading::Spice
+    }
+}
+
+impl Part {
+    /// The definition whose body takes the part's place, unless that stays closed: by `closed`, because the part is
+    /// not there, or because nothing is known of the inside.
+    pub(super) fn opened(&self, program: &Program, closed: &HashSet<Id<Definition>>) -> Option<Id<Definition>> {
+        let id = self.definition?;
+        let scope = program.definitions[id].scope;
+        let known = !program.scopes[scope].body.is_empty() && !program.scopes[scope].sealed;
+        (self.fitted && known && !closed.contains(&id)).then_some(id)
     }
 }
 
