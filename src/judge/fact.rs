@@ -157,6 +157,8 @@ pub(crate) struct Because {
     pub assumptions: Vec<Assumed>,
     /// Why the value is not known.
     pub gaps: Vec<Gap>,
+    /// The number is from memory, not from a published source: it may leave a verdict open, never break it.
+    pub from_memory: bool,
 }
 
 /// Something taken for granted, visible in every output.
@@ -260,6 +262,12 @@ impl Fact {
     /// The same with the published source of its number.
     pub(crate) fn source(mut self, source: impl Into<String>) -> Self {
         self.because.get_or_insert_default().source = Some(source.into());
+        self
+    }
+
+    /// The same marked as from memory.
+    pub(crate) fn from_memory(mut self) -> Self {
+        self.because.get_or_insert_default().from_memory = true;
         self
     }
 

@@ -68,10 +68,12 @@ impl Branches {
             }
         };
         let found = connectivity.paths(output, |link, _| link.kind != LinkKind::Control, at);
-        let mut list: Vec<Branch> =
-            found.found.into_iter().flat_map(|path| ends(board, output, &path).map(move |end| (path.clone(), end)).collect::<SmallVec<[_; 2]>>())
-                .map(|(path, end)| Branch { path, end })
-                .collect();
+        let mut list = Vec::with_capacity(found.found.len());
+        for path in found.found {
+            for end in ends(board, output, &path) {
+                list.push(Branch { path: path.clone(), end });
+            }
+        }
         // Pins right at the output are ends of a path without hops.
         list.extend(
             ends_at(board, output).map(|end| Branch { path: Path { hops: SmallVec::new(), end: output, dead_end: false }, end }),

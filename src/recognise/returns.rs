@@ -124,6 +124,11 @@ pub(crate) fn return_pins<'b>(board: &'b Board<'_>, pin: Pin) -> impl Iterator<I
 /// The links that the current of `emitter` shares with one of `references` on its way to `negative`.
 pub(crate) fn shared(board: &Board<'_>, emitter: Id<Net>, references: &[Id<Net>], negative: Id<Net>) -> Vec<Shared> {
     let mut shared = Vec::new();
+    // With the emitter on the supply's own copper, or every reference on the emitter's, nothing is shared that lifts.
+    let apart = |net: &Id<Net>| !board.connectivity.same(*net, negative);
+    if !apart(&emitter) || !references.iter().any(apart) {
+        return shared;
+    }
     let segments = board.connectivity.segments(negative, |_, link| is_return_link(board, link));
     for bridge in &segments.bridges {
         let link = *board.connectivity.link(bridge.link);

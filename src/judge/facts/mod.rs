@@ -1,6 +1,10 @@
 //! Facts by group: each file holds one group's vocabulary and how it is worked out.
+//!
+//! [`GROUPS`] is the whole vocabulary. A subject's slots hold its scope's groups in the order in which they stand here;
+//! the functions below keep that order, and a test holds them to it.
 
 pub(crate) mod ask;
+pub(crate) mod board;
 pub(crate) mod clamp;
 pub(crate) mod driver;
 pub(crate) mod input;
@@ -14,3 +18,66 @@ pub(crate) mod spare;
 pub(crate) mod supply;
 pub(crate) mod turn_off;
 pub(crate) mod volts;
+
+use crate::recognise::load::Load;
+use crate::recognise::parallel::Group;
+use crate::recognise::site::{ChannelSite, Site};
+use crate::recognise::turn_off::Ways;
+
+use super::fact::{Fact, FactDef};
+
+/// Every group of facts. Groups of one scope fill its slots in this order.
+pub(crate) const GROUPS: &[&[FactDef]] = &[
+    board::Whole::DEFS,
+    rail::Supply::DEFS,
+    part::Part::DEFS,
+    record::Record::DEFS,
+    clamp::Clamp::DEFS,
+    spare::Spare::DEFS,
+    input::Input::DEFS,
+    output::Output::DEFS,
+    turn_off::TurnOff::DEFS,
+    supply::Feed::DEFS,
+    parallel::Parallel::DEFS,
+    driver::Drive::DEFS,
+    path::Path::DEFS,
+];
+
+/// The slots of an array.
+pub(crate) fn array(site: &Site<'_>) -> Vec<Fact> {
+    let mut slots = Vec::with_capacity(record::Record::DEFS.len() + clamp::Clamp::DEFS.len() + spare::Spare::DEFS.len());
+    record::Record::of(site).into_slots(&mut slots);
+    clamp::Clamp::of(site).into_slots(&mut slots);
+    spare::Spare::of(site).into_slots(&mut slots);
+    slots
+}
+
+/// The slots of a channel.
+pub(crate) fn channel(site: &Site<'_>, channel: &ChannelSite<'_>) -> Vec<Fact> {
+    let mut slots = Vec::with_capacity(input::Input::DEFS.len() + output::Output::DEFS.len());
+    input::Input::of(site, channel).into_slots(&mut slots);
+    output::Output::of(site, channel).into_slots(&mut slots);
+    slots
+}
+
+/// The slots of a load.
+pub(crate) fn load(site: &Site<'_>, channel: &ChannelSite<'_>, load: &Load, ways: &Ways) -> Vec<Fact> {
+    let mut slots = Vec::with_capacity(turn_off::TurnOff::DEFS.len() + supply::Feed::DEFS.len());
+    turn_off::TurnOff::of(site, channel, load, ways).into_slots(&mut slots);
+    supply::Feed::of(site, channel, load, ways).into_slots(&mut slots);
+    slots
+}
+
+/// The slots of a parallel group.
+pub(crate) fn parallel(site: &Site<'_>, group: &Group) -> Vec<Fact> {
+    let mut slots = Vec::with_capacity(parallel::Parallel::DEFS.len());
+    parallel::Parallel::of(site, group).into_slots(&mut slots);
+    slots
+}
+
+/// The slots of a return path.
+pub(crate) fn return_path(site: &Site<'_>) -> Vec<Fact> {
+    let mut slots = Vec::with_capacity(path::Path::DEFS.len());
+    path::Path::of(site).into_slots(&mut slots);
+    slots
+}

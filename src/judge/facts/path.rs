@@ -160,8 +160,8 @@ fn allowance(site: &Site<'_>, reference: Option<Id<Net>>) -> Fact {
     }
     let family = inputs().find_map(|pin| site.driver_family(pin.net));
     match family.and_then(|name| board.library.levels(name)) {
-        Some(levels) => match levels.low_margin() {
-            Some(volts) => Fact::number(volts.0).source(levels.source_text()),
+        Some(levels) => match levels.low_out.iter().map(|point| point.level.at(levels.supply_v).0).reduce(f64::max) {
+            Some(low_out) => Fact::number(levels.low_in.at(levels.supply_v).0 - low_out).source(levels.low_in.from.text()),
             None => Fact::reason("the family's levels give no noise margin", None),
         },
         None => Fact::ask(ask::driver_family(site, reference)),
