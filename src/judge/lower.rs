@@ -1,0 +1,260 @@
+//! From the text of a predicate to a typed [`Test`]: parsed by the `cel` crate, checked against the vocabulary.
+//!
+//! Only a closed subset of CEL is taken: `&& || !`, comparison, arithmetic, literals, `in` a literal list, `exists`, `all`.
+//! Parsing takes the crate's fast parser; it drops offsets, so a refused predicate is parsed again for its caret.
+
+use std::ops::Range;
+
+use cel::common::ast::{CallExpr, ComprehensionExpr, Expr, IdedExpr, LiteralValue, operators};
+use cel::parser::{Parser, PrattParser};
+
+use crate::notes::near::near;
+
+use super::fact::{Kind, Scope};
+use super::predicate::{Arithmetic, Number, Order, Test, Words};
+use super::vocabulary::{Slot, Vocabulary};
+
+/// Why a predicate is refused.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub(crate) struct Refused {
+    /// What is wrong.
+    pub message: String,
+    /// A way out.
+    pub hint: Option<String>,
+    /// Where in the predicate, in bytes; the whole of it where nothing more is known.
+    pub place: Option<Range<usize>>,
+}
+
+/// What a card's predicate may name.
+#[derive(Clone, Copy, Debug)]
+pub(crate) struct Terms<'a> {
+    /// The facts.
+    pub vocabulary: &'a Vocabulary,
+    /// The card's scope.
+    pub scope: Scope,
+    /// The names of its limits, in order of their rows.
+    pub limits: &'a [String],
+}
+
+/// A part of a predicate that is refused: the node, what is wrong, a way out.
+struct Fault {
+    node: u64,
+    message: String,
+    hint: Option<String>,
+}
+
+/// What a node of the tree is worth.
+enum Typed {
+    Test(Test),
+    Number(Number),
+    Words(Words),
+    List(Slot),
+}
+
+/// Lowers the predicate `text`.
+///
+/// # Errors
+/// What is not CEL, not of the subset, or names what does not exist.
+pub(crate) fn lower(text: &str, terms: &Terms<'_>) -> Result<Test, Refused> {
+    let tree = PrattParser::new().parse(text).map_err(|_| syntax(text))?;
+    let lowered = Lowering { terms, item: None }.test(&tree);
+    lowered.map_err(|fault| {
+        // The same tree with offsets: both parsers number nodes in their own way, so the check runs again on this one.
+        let Ok((tree, info)) = Parser::default().parse_with_source_info(text) else { return placed(fault, None) };
+        let fault = Lowering { terms, item: None }.test(&tree).err().unwrap_or(fault);
+        let place = info.offset_for(fault.node).map(|(start, stop)| bytes(text, start, stop));
+        placed(fault, place)
+    })
+}
+
+fn placed(fault: Fault, place: Option<Range<usize>>) -> Refused {
+    Refused { message: fault.message, hint: fault.hint, place }
+}
+
+fn syntax(text: &str) -> Refused {
+    let errors = Parser::default().parse_with_source_info(text).err();
+    let first = errors.as_ref().and_then(|errors| errors.errors.first());
+    let place = first.and_then(|error| {
+        let (line, column) = error.pos;
+        let line_start: usize = text.split_inclusive('\n').take(usize::try_from(line - 1).ok()?).map(str::len).sum();
+        let start = (line_start + usize::try_from(column).ok()?).min(text.len());
+        let start = (0..=start).rev().find(|&at| text.is_char_boundary(at))?;
+        Some(start..start)
+    });
+    Refused {
+        message: "this is no expression of the Common Expression Language".to_owned(),
+        hint: first.map(|error| error.msg.clone()).filter(|message| !message.is_empty()),
+        place,
+    }
+}
+
+/// The crate counts characters; a span counts bytes.
+fn bytes(text: &str, start: u32, stop: u32) -> Range<usize> {
+    let at = |chars: usize| text.char_indices().nth(chars).map_or(text.len(), |(at, _)| at);
+    at(start as usize)..at(stop as usize + 1)
+}
+
+struct Lowering<'a> {
+    terms: &'a Terms<'a>,
+    /// The variable of the `exists` or `all` around.
+    item: Option<&'a str>,
+}
+
+impl Lowering<'_> {
+    fn test(&self, node: &IdedExpr) -> Result<Test, Fault> {
+        match self.typed(node)? {
+            Typed::Test(test) => Ok(test),
+            _ => Err(fault(node, "this is not true or false", None)),
+        }
+    }
+
+    fn number(&self, node: &IdedExpr) -> Result<Number, Fault> {
+        match self.typed(node)? {
+            Typed::Number(number) => Ok(number),
+            _ => Err(fault(node, "this is not a number", None)),
+        }
+    }
+
+    fn typed(&self, node: &IdedExpr) -> Result<Typed, Fault> {
+        match &node.expr {
+            Expr::Literal(literal) => literal_of(node, literal),
+            Expr::Ident(name) if Some(name.as_str()) == self.item => Ok(Typed::Words(Words::Item)),
+            Expr::Ident(name) => Err(self.unknown(node, name)),
+            Expr::Select(select) if !select.test => match &select.operand.expr {
+                Expr::Ident(root) => self.named(node, root, &select.field),
+                _ => Err(fault(node, "facts are written `scope.fact`", None)),
+            },
+            Expr::Call(call) => self.call(node, call),
+            Expr::Comprehension(comprehension) => self.comprehension(node, comprehension),
+            _ => Err(unsupported(node, "this")),
+        }
+    }
+
+    fn named(&self, node: &IdedExpr, root: &str, field: &str) -> Result<Typed, Fault> {
+        if root == "limits" {
+            return match self.terms.limits.iter().position(|limit| limit == field) {
+                Some(row) => Ok(Typed::Number(Number::Limit(row))),
+                None => {
+                    let hint = near(field, self.terms.limits.iter().map(String::as_str));
+                    Err(fault(node, format!("the card has no limit `{field}`"), hint.map(|name| format!("did you mean `limits.{name}`?"))))
+                }
+            };
+        }
+        let scope = self.terms.scope.reach().iter().copied().find(|scope| scope.name() == root);
+        let Some(slot) = scope.and_then(|scope| self.terms.vocabulary.slot(scope, field)) else {
+            return Err(self.unknown(node, &format!("{root}.{field}")));
+        };
+        Ok(match self.terms.vocabulary.def(slot).kind {
+            Kind::Flag => Typed::Test(Test::Flag(slot)),
+            Kind::Number(_) => Typed::Number(Number::Fact(slot)),
+            Kind::Text => Typed::Words(Words::Fact(slot)),
+            Kind::Texts => Typed::List(slot),
+        })
+    }
+
+    fn unknown(&self, node: &IdedExpr, name: &str) -> Fault {
+        let names = self.terms.vocabulary.names_in_reach(self.terms.scope);
+        let hint = near(name, names.iter().map(String::as_str)).map(|near| format!("did you mean `{near}`?"));
+        let scope = self.terms.scope.name();
+        fault(node, format!("a card of scope `{scope}` knows no fact `{name}`"), hint)
+    }
+
+    fn call(&self, node: &IdedExpr, call: &CallExpr) -> Result<Typed, Fault> {
+        if call.target.is_some() {
+            return Err(unsupported(node, &format!("`{}`", call.func_name)));
+        }
+        let test = |at: usize| self.test(&call.args[at]).map(Box::new);
+        let number = |at: usize| self.number(&call.args[at]).map(Box::new);
+        let arithmetic = |how| Ok(Typed::Number(Number::Joined(how, number(0)?, number(1)?)));
+        match (call.func_name.as_str(), call.args.len()) {
+            (operators::LOGICAL_AND, 2) => Ok(Typed::Test(Test::And(test(0)?, test(1)?))),
+            (operators::LOGICAL_OR, 2) => Ok(Typed::Test(Test::Or(test(0)?, test(1)?))),
+            (operators::LOGICAL_NOT, 1) => Ok(Typed::Test(Test::Not(test(0)?))),
+            (operators::ADD, 2) => arithmetic(Arithmetic::Add),
+            (operators::SUBSTRACT, 2) => arithmetic(Arithmetic::Subtract),
+            (operators::MULTIPLY, 2) => arithmetic(Arithmetic::Multiply),
+            (operators::DIVIDE, 2) => arithmetic(Arithmetic::Divide),
+            (operators::NEGATE, 1) => Ok(Typed::Number(Number::Negative(number(0)?))),
+            (operators::LESS, 2) => Ok(Typed::Test(Test::Compare(Order::Less, *number(0)?, *number(1)?))),
+            (operators::LESS_EQUALS, 2) => Ok(Typed::Test(Test::Compare(Order::LessOrEqual, *number(0)?, *number(1)?))),
+            (operators::GREATER, 2) => Ok(Typed::Test(Test::Compare(Order::Less, *number(1)?, *number(0)?))),
+            (operators::GREATER_EQUALS, 2) => Ok(Typed::Test(Test::Compare(Order::LessOrEqual, *number(1)?, *number(0)?))),
+            (operators::EQUALS, 2) => Ok(Typed::Test(self.equal(node, call)?)),
+            (operators::NOT_EQUALS, 2) => Ok(Typed::Test(Test::Not(Box::new(self.equal(node, call)?)))),
+            (operators::IN, 2) => self.among(node, call),
+            (name, _) => Err(unsupported(node, &format!("`{}`", name.trim_matches(['_', '@'])))),
+        }
+    }
+
+    fn equal(&self, node: &IdedExpr, call: &CallExpr) -> Result<Test, Fault> {
+        match (self.typed(&call.args[0])?, self.typed(&call.args[1])?) {
+            (Typed::Number(a), Typed::Number(b)) => Ok(Test::Compare(Order::Equal, a, b)),
+            (Typed::Words(a), Typed::Words(b)) => Ok(Test::Same(a, b)),
+            (Typed::Test(a), Typed::Test(b)) => Ok(Test::Alike(Box::new(a), Box::new(b))),
+            _ => Err(fault(node, "the two sides are of different kinds and can never be equal", None)),
+        }
+    }
+
+    fn among(&self, node: &IdedExpr, call: &CallExpr) -> Result<Typed, Fault> {
+        let Typed::Words(words) = self.typed(&call.args[0])? else {
+            return Err(fault(&call.args[0], "`in` takes a text on its left", None));
+        };
+        let Expr::List(list) = &call.args[1].expr else {
+            return Err(fault(&call.args[1], "`in` takes a list of literals on its right", None));
+        };
+        let mut entries = Vec::new();
+        for element in &list.elements {
+            match self.typed(element)? {
+                Typed::Words(Words::Literal(text)) => entries.push(text),
+                _ => return Err(fault(element, "the list holds texts only", None)),
+            }
+        }
+        if entries.is_empty() {
+            return Err(fault(node, "nothing is in an empty list", None));
+        }
+        Ok(Typed::Test(Test::Among(words, entries)))
+    }
+
+    /// `exists` and `all` arrive as loops that start from false and from true.
+    fn comprehension(&self, node: &IdedExpr, loop_: &ComprehensionExpr) -> Result<Typed, Fault> {
+        let Typed::List(list) = self.typed(&loop_.iter_range)? else {
+            return Err(fault(&loop_.iter_range, "this is not a list", None));
+        };
+        let wrong = || unsupported(node, "this kind of loop");
+        if self.item.is_some() || loop_.iter_var2.is_some() {
+            return Err(wrong());
+        }
+        let (Expr::Literal(LiteralValue::Boolean(start)), Expr::Call(step)) = (&loop_.accu_init.expr, &loop_.loop_step.expr) else {
+            return Err(wrong());
+        };
+        let [_, condition] = &step.args[..] else { return Err(wrong()) };
+        let inner = Lowering { terms: self.terms, item: Some(&loop_.iter_var) };
+        match (*start.inner(), step.func_name.as_str()) {
+            (false, operators::LOGICAL_OR) => Ok(Typed::Test(Test::Exists(list, Box::new(inner.test(condition)?)))),
+            (true, operators::LOGICAL_AND) => Ok(Typed::Test(Test::All(list, Box::new(inner.test(condition)?)))),
+            _ => Err(wrong()),
+        }
+    }
+}
+
+fn literal_of(node: &IdedExpr, literal: &LiteralValue) -> Result<Typed, Fault> {
+    match literal {
+        LiteralValue::Boolean(value) => Ok(Typed::Test(Test::Is(*value.inner()))),
+        LiteralValue::Double(value) => Ok(Typed::Number(Number::Literal(*value.inner()))),
+        LiteralValue::String(value) => Ok(Typed::Words(Words::Literal(value.inner().into()))),
+        LiteralValue::Int(value) => {
+            let hint = format!("write `{}.0`", value.inner());
+            Err(fault(node, "numbers are doubles here", Some(hint)))
+        }
+        _ => Err(unsupported(node, "this literal")),
+    }
+}
+
+fn fault(node: &IdedExpr, message: impl Into<String>, hint: Option<String>) -> Fault {
+    Fault { node: node.id, message: message.into(), hint }
+}
+
+fn unsupported(node: &IdedExpr, what: &str) -> Fault {
+    let hint = "a predicate takes && || !, comparison, arithmetic, literals, `in` a list of literals, exists and all";
+    fault(node, format!("{what} is not part of a predicate"), Some(hint.to_owned()))
+}
