@@ -7,11 +7,14 @@
 // Lifted when the pipeline is joined.
 #![allow(dead_code)]
 
+mod class;
 pub(crate) mod decode;
+pub(crate) mod designator;
 mod directive;
 pub(crate) mod element;
 mod encrypted;
 pub(crate) mod expression;
+mod fitted;
 mod function;
 mod lines;
 pub(crate) mod model;
@@ -19,6 +22,7 @@ pub(crate) mod number;
 mod reader;
 mod remarks;
 pub(crate) mod source;
+mod spice;
 mod title;
 pub(crate) mod words;
 

@@ -124,7 +124,8 @@ impl<'t> Reader<'t> {
 
     /// Decides whether the first statement is the title.
     fn settle_title(&mut self) {
-        let Some(&statement) = self.statements.first() else { return };
+        let first = self.statements.first().filter(|first| first.form != StatementForm::Encrypted);
+        let Some(&statement) = first else { return };
         let words = self.words.get(..statement.count as usize).unwrap_or(&[]);
         let defined = |name: &str, form: StatementForm| {
             self.statements.iter().filter(|statement| statement.form == form).any(|statement| {
