@@ -9,14 +9,13 @@ use super::program::{Line, ModelLine, Program, Scope, text};
 use super::remarks::Topic;
 use super::template::{Local, Part, Shared, Template};
 use crate::base::names::Name;
-use crate::base::notice::{Notice, Severity};
+use crate::base::notice::Notice;
 use crate::base::sources::Sources;
 use crate::base::span::{FileId, Span};
 use crate::base::table::Id;
 use crate::netlist::designator;
-use crate::netlist::element::{self, ElementForm, Known, ModelHint, Problem};
+use crate::netlist::element::{self, ElementForm, Known, ModelHint, ValueForm};
 use crate::netlist::model::{PartClass, Word};
-use crate::netlist::words::assignments;
 
 /// Makes the templates of all scopes.
 ///
@@ -113,7 +112,7 @@ impl Compiler<'_> {
             names.push(name);
             if written.as_bytes().first().is_some_and(|letter| letter.eq_ignore_ascii_case(&b'l')) {
                 self.pool.put_inductor(name);
-                let short = designator::strip(written);
+                let short = designator::stripped(written);
                 if short != written {
                     let short = program.names.intern(short);
                     self.pool.put_inductor(short);
@@ -134,15 +133,13 @@ impl Compiler<'_> {
         let file = program.file(line);
         let span = program.line(line).0.span;
         let view = View { program, pool: &self.pool, hints: &self.hints, scope };
-        let deck = &program.decks[line.deck as usize];
-        let read = element::read(sources.text(file), deck, program.line(line).0, &view);
+        let read = element::read(sources.text(file), program.line(line).1, program.line(line).0, &view);
         let form = match read {
             Ok(form) if form.nodes.len() <= usize::from(u16::MAX) => form,
             Ok(_) => return Err(passed("pins of one part", usize::from(u16::MAX), "", Some(span))),
-            Err(Problem { word, message }) => {
+            Err(problem) => {
                 if template.problems.len() < PROBLEMS {
-                    let place = Span { file, start: word.start, len: word.len };
-                    template.problems.push(Notice::at(Severity::Warning, place, message));
+                    template.problems.push(problem.notice(file));
                 }
                 template.not_read.push(line);
                 return Ok(());
@@ -172,7 +169,7 @@ impl Compiler<'_> {
             definition: None,
         };
         self.value(program, scope, line, &form, &mut part, template)?;
-        if let Some(word) = form.kind {
+        if let Some(word) = form.kind.filter(|_| part.formula.is_none() || !matches!(form.value, ValueForm::Word(_))) {
             self.kind(program, scope, file, word, &mut part, template);
         }
         self.tails(program, scope, line, &form, &mut part, template);
@@ -213,7 +210,10 @@ impl Compiler<'_> {
             }
         };
         // Each pin that leads nowhere is a net of its own, however often its name stands there.
-        if shared.is_some() || !designator::open_pin(spelled) {
+        let open = shared.is_none() && is_open(spelled);
+        if open {
+            template.remarks.add(Topic::OpenPin, span, spelled);
+        } else {
             self.pool.put(name, local);
         }
         local
@@ -265,4 +265,13 @@ impl Compiler<'_> {
             }
         }
     }
+}
+
+/// Whether a net of this name is one pin that leads nowhere: `?`, `NC`, `N/C`, `NC_0`, `unconnected-(U1-Pad8)`.
+fn is_open(name: &str) -> bool {
+    let starts = |start: &str| name.get(..start.len()).is_some_and(|head| head.eq_ignore_ascii_case(start));
+    let numbered = |tail: &str| !tail.is_empty() && tail.bytes().all(|byte| byte.is_ascii_digit());
+    designator::open_pin(name).is_some()
+        || (starts("nc_") && name.get(3..).is_some_and(numbered))
+        || starts("unconnected-")
 }

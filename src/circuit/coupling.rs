@@ -22,7 +22,7 @@ impl Compiler<'_> {
             for row in refers {
                 let Some(&word) = words.get(row as usize) else { continue };
                 let spelled = text(self.sources, file, word);
-                let short = designator::strip(spelled);
+                let short = designator::stripped(spelled);
                 let found = [spelled, short].into_iter().find_map(|name| self.pool.part(program.names.get(name)?));
                 match found.filter(|&at| template.parts[at].class == PartClass::Inductor) {
                     Some(at) => windings.push(at as u32),

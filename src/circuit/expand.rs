@@ -8,7 +8,7 @@ use super::models;
 use super::nets::{GROUND, Naming, net};
 use super::params::{Env, Evaluator};
 use super::plan::Plan;
-use super::program::{Definition, ModelLine, Program, Scope};
+use super::program::{Definition, Formula, ModelLine, Program, Scope};
 use super::remarks::{Remarks, Topic};
 use super::template::{Amount, Local, Part, Shared, Tail, Template};
 use super::value;
@@ -17,6 +17,7 @@ use crate::base::notice::{Notice, Severity};
 use crate::base::sources::Sources;
 use crate::base::span::{FileId, Span};
 use crate::base::table::Id;
+use crate::netlist::model::PartClass;
 
 /// A board, flat.
 #[derive(Debug)]
@@ -216,13 +217,7 @@ impl<'a> Expander<'a> {
         }
         let value = match part.formula {
             None => part.value,
-            Some(formula) => match self.evaluator.value(frame.env, formula)? {
-                Some(number) => value::of_class(part.class, number),
-                None => {
-                    self.remarks.add(Topic::UnknownValue, part.span, program.names.text(part.refdes));
-                    Value::Unknown
-                }
-            },
+            Some(formula) => self.value(part, formula, frame.env)?,
         };
         let model = match part.model {
             Some(line) => Some(self.model(line)?),
@@ -248,6 +243,17 @@ impl<'a> Expander<'a> {
             self.tails(template, part, frame, id)?;
         }
         Ok(())
+    }
+
+    fn value(&mut self, part: &Part, formula: Id<Formula>, env: Env) -> Result<Value, Box<Notice>> {
+        // A behavioural source rests on the running circuit: that its value is not known is no news.
+        let controlled = part.class == PartClass::Controlled;
+        let number =
+            if controlled { self.evaluator.quietly(env, formula)? } else { self.evaluator.value(env, formula)? };
+        if number.is_none() && !controlled {
+            self.remarks.add(Topic::UnknownValue, part.span, self.program.names.text(part.refdes));
+        }
+        Ok(number.map_or(Value::Unknown, |number| value::of_class(part.class, number)))
     }
 
     fn tails(
@@ -276,7 +282,7 @@ impl<'a> Expander<'a> {
     pub(super) fn amount(&mut self, env: Env, amount: Amount) -> Result<Option<f64>, Box<Notice>> {
         match amount {
             Amount::Known(value) => Ok(Some(value)),
-            Amount::Formula(formula) => self.evaluator.value(env, formula),
+            Amount::Formula(formula) => self.evaluator.quietly(env, formula),
         }
     }
 

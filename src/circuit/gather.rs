@@ -6,10 +6,9 @@ use std::path::{Path, PathBuf};
 use hashbrown::{HashMap, HashSet};
 
 use super::condition::Condition;
-use super::header;
 use super::include::Door;
 use super::limits::Limits;
-use super::program::{Definition, Formula, Line, ModelLine, Program, Scope, pairs, text};
+use super::program::{Definition, Formula, Line, ModelLine, Program, Scope, text};
 use super::remarks::{Remarks, Topic};
 use super::sections::Sections;
 use super::subckt::Open;
@@ -20,6 +19,7 @@ use crate::base::span::{FileId, Span};
 use crate::base::table::Id;
 use crate::netlist;
 use crate::netlist::model::{Statement, StatementForm, Word};
+use crate::netlist::words::assignments;
 
 /// A file that the user named: one board, or one sheet of it.
 #[derive(Clone, Debug)]
@@ -225,9 +225,10 @@ impl<'a> Gatherer<'a> {
     fn param(&mut self, line: Line) {
         let (file, words) = self.words(line);
         let scope = self.scope();
-        for (key, value) in pairs(&words) {
-            let key = self.program.names.intern(text(self.sources, file, words[key]));
-            let span = header::span(file, &words, value);
+        let pairs: Vec<_> = assignments(self.sources.text(file), &words).collect();
+        for pair in pairs {
+            let key = self.program.names.intern(text(self.sources, file, pair.key));
+            let span = pair.value.span(file);
             let formula = self.formula(span);
             if let Some(old) = self.program.parameters.insert((scope, key), formula)
                 && self.sources.slice(self.program.formulas[old].span) != self.sources.slice(span)

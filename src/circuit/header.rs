@@ -2,7 +2,6 @@
 
 use std::ops::Range;
 
-use super::program::pairs;
 use crate::base::span::{FileId, Span};
 use crate::netlist::model::{Word, WordForm};
 
@@ -82,4 +81,23 @@ pub(super) fn span(file: FileId, words: &[Word], range: Range<usize>) -> Span {
     let first = words.get(range.start).map_or(0, |word| word.start as usize);
     let last = range.end.checked_sub(1).filter(|&last| last >= range.start).and_then(|last| words.get(last));
     Span::new(file, first, last.map_or(first, |word| (word.start + word.len) as usize))
+}
+
+/// The `key=value` pairs among `words`: the key's index, and the indices of the value, which ends before the next key.
+fn pairs(words: &[Word]) -> impl Iterator<Item = (usize, Range<usize>)> {
+    let equals = |at: usize| words.get(at).is_some_and(|word| word.form == WordForm::Equals);
+    let mut at = 0;
+    std::iter::from_fn(move || {
+        while at < words.len() && !equals(at + 1) {
+            at += 1;
+        }
+        let key = (at < words.len()).then_some(at)?;
+        let first = (key + 2).min(words.len());
+        let mut end = first;
+        while end < words.len() && !equals(end + 1) && !equals(end) {
+            end += 1;
+        }
+        at = end;
+        Some((key, first..end))
+    })
 }

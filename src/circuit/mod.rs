@@ -25,7 +25,6 @@ mod pool;
 pub(crate) mod program;
 mod remarks;
 mod sections;
-mod source;
 mod splice;
 mod subckt;
 mod suggest;

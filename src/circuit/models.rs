@@ -1,15 +1,15 @@
 //! The `.model` line of a model that an element uses.
 
+use super::limits;
 use super::model::{Model, ModelKind};
 use super::params::{Env, Evaluator};
-use super::program::{ModelLine, Program, pairs, text};
-use super::{header, limits};
+use super::program::{ModelLine, Program, text};
 use crate::base::notice::Notice;
 use crate::base::sources::Sources;
-use crate::base::span::Span;
 use crate::base::table::Id;
 use crate::netlist::element::ModelHint;
 use crate::netlist::model::{Word, WordForm};
+use crate::netlist::words::assignments;
 
 /// How many models may rest on each other by `ako:`.
 const AKO_DEPTH: usize = 16;
@@ -106,13 +106,9 @@ fn add(
         let p_channel = words.iter().any(|&word| lower(sources, file, word) == "pchan");
         model.kind = kind(&lower(sources, file, word), p_channel).unwrap_or(model.kind);
     }
-    for (key, value) in pairs(&words) {
-        // A list of values (noise spectra, tables) is no number.
-        if value.len() == 1 {
-            let span: Span = header::span(file, &words, value);
-            if let Some(number) = evaluator.at(Env::TOP, span)? {
-                model.parameters.push((lower(sources, file, words[key]), number));
-            }
+    for pair in assignments(sources.text(file), &words) {
+        if let Some(number) = evaluator.at(Env::TOP, pair.value.span(file))? {
+            model.parameters.push((lower(sources, file, pair.key), number));
         }
     }
     Ok(())

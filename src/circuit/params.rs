@@ -38,6 +38,8 @@ pub(super) struct Evaluator<'a> {
     depth: usize,
     /// A limit that was passed inside an expression.
     failed: Option<Box<Notice>>,
+    /// Says nothing of names that are not known.
+    quiet: bool,
     /// What was noticed.
     pub remarks: Remarks,
 }
@@ -68,6 +70,7 @@ impl<'a> Evaluator<'a> {
             steps: 0,
             depth: 0,
             failed: None,
+            quiet: false,
             remarks: Remarks::default(),
         }
     }
@@ -100,6 +103,17 @@ impl<'a> Evaluator<'a> {
     /// A limit passed.
     pub(super) fn value(&mut self, env: Env, formula: Id<Formula>) -> Result<Option<f64>, Box<Notice>> {
         self.at(env, self.program.formulas[formula].span)
+    }
+
+    /// The same for what may well be no number, such as `tc=…` or a behavioural source.
+    ///
+    /// # Errors
+    /// A limit passed.
+    pub(super) fn quietly(&mut self, env: Env, formula: Id<Formula>) -> Result<Option<f64>, Box<Notice>> {
+        self.quiet = true;
+        let value = self.value(env, formula);
+        self.quiet = false;
+        value
     }
 
     /// What the text at `span` comes to in `env`; none where it is not known.
@@ -156,7 +170,9 @@ impl<'a> Evaluator<'a> {
             if ["pi", "true", "false"].iter().any(|known| text.eq_ignore_ascii_case(known)) {
                 return None;
             }
-            self.remarks.add(Topic::UnknownParameter, span, text);
+            if !self.quiet {
+                self.remarks.add(Topic::UnknownParameter, span, text);
+            }
             return None;
         };
         let level = env.0 as usize;

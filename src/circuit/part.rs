@@ -1,21 +1,21 @@
 //! One element line that was read: its value, what its words mean, and what there is to say about it.
 
 use super::compile::Compiler;
-use super::header;
 use super::model::Value;
 use super::params::{Env, Evaluator};
-use super::program::{Formula, Line, Program, Scope, pairs, text};
+use super::program::{Formula, Line, Program, Scope, text};
 use super::remarks::Topic;
-use super::source;
 use super::template::{Amount, Part, Shared, Tail, Template};
 use super::value;
+use crate::base::names::Name;
 use crate::base::notice::Notice;
-use crate::base::quantity::Ohms;
+use crate::base::quantity::{Ohms, Volts};
 use crate::base::span::{FileId, Span};
 use crate::base::table::Id;
 use crate::netlist::element::{ElementForm, ValueForm};
 use crate::netlist::model::{PartClass, Reading, Word, WordForm};
 use crate::netlist::number::{self, Doubt, Number, Spelling};
+use crate::netlist::words::assignments;
 
 impl Compiler<'_> {
     pub(super) fn value(
@@ -43,23 +43,27 @@ impl Compiler<'_> {
                     part.part_type = Some(program.names.intern(spelled));
                 }
             }
-            ValueForm::Moving(waveform) => {
-                let words = &program.decks[line.deck as usize].words;
-                let words = words.get(waveform.arguments.start as usize..waveform.arguments.end as usize);
-                let mut evaluator = Evaluator::new(program, self.sources, self.limits);
-                let mut arguments = Vec::new();
-                for &word in words.unwrap_or(&[]) {
-                    let plain = number::parse(text(self.sources, file, word)).map(|number| number.value);
-                    arguments.push(match plain {
-                        // Inside a definition a name may mean something else in each instance.
-                        None if scope.index() == 0 => evaluator.at(Env::TOP, place(word))?,
-                        plain => plain,
-                    });
+            ValueForm::Moving(waveform) if part.class == PartClass::VoltageSource => {
+                let sources = self.sources;
+                let mut evaluator = Evaluator::new(program, sources, self.limits);
+                let mut failed = None;
+                let range = waveform.range(&program.decks[line.deck as usize].words, &mut |word| {
+                    let plain = number::parse(text(sources, file, word)).map(|number| number.value);
+                    // Inside a definition a name may mean something else in each instance.
+                    let known = plain.map_or_else(|| scope.index() == 0, |_| false);
+                    let worked = if known { evaluator.at(Env::TOP, place(word)) } else { Ok(plain) };
+                    worked.unwrap_or_else(|notice| {
+                        failed = Some(notice);
+                        None
+                    })
+                });
+                if let Some(notice) = failed {
+                    return Err(notice);
                 }
-                if part.class == PartClass::VoltageSource {
-                    part.value = source::range(waveform.shape, &arguments);
-                }
+                let (low, high) = range.unwrap_or((f64::NAN, f64::NAN));
+                part.value = Value::VoltsBetween(Volts(low), Volts(high));
             }
+            ValueForm::Moving(_) => {}
         }
         Ok(())
     }
@@ -140,24 +144,24 @@ impl Compiler<'_> {
             return;
         }
         let words = program.decks[line.deck as usize].words.get(rows).unwrap_or(&[]).to_vec();
-        for (key, value) in pairs(&words) {
-            let Some(&first) = words.get(value.start) else { continue };
-            let key = program.names.intern(text(self.sources, file, words[key]));
-            let spelled = text(self.sources, file, first);
+        let sources = self.sources;
+        for pair in assignments(sources.text(file), &words) {
+            let key = program.names.intern(text(sources, file, pair.key));
+            let spelled = text(sources, file, pair.value);
             let amount = match number::parse(spelled) {
-                Some(number) if value.len() == 1 => Amount::Known(number.value),
-                _ => {
-                    let known = first.form == WordForm::Braced
-                        || program.names.get(spelled).is_some_and(|name| {
-                            program.chain(scope).any(|at| program.parameters.contains_key(&(at, name)))
-                        });
+                Some(number) => Amount::Known(number.value),
+                None => {
+                    let is_parameter =
+                        |name: Name| program.chain(scope).any(|at| program.parameters.contains_key(&(at, name)));
+                    let known = !pair.single
+                        || pair.value.form == WordForm::Braced
+                        || program.names.get(spelled).is_some_and(is_parameter);
                     if !known && part.class != PartClass::Block {
                         // A word: a model, a flag, a path. It is no number in any instance.
                         continue;
                     }
                     template.waits = true;
-                    let span = header::span(file, &words, value);
-                    Amount::Formula(program.formulas.push(Formula { span }))
+                    Amount::Formula(program.formulas.push(Formula { span: pair.value.span(file) }))
                 }
             };
             template.tails.push(Tail { key, value: amount });

@@ -12,7 +12,7 @@ use crate::base::notice::Notice;
 use crate::base::sources::Sources;
 use crate::base::span::{FileId, Span};
 use crate::base::table::{Id, Table};
-use crate::netlist::model::{Deck, Statement, Word, WordForm};
+use crate::netlist::model::{Deck, Statement, Word};
 
 /// All files of a board, sorted into scopes.
 #[derive(Debug, Default)]
@@ -156,26 +156,4 @@ impl Program {
 /// The text of `word` in `file`.
 pub(super) fn text(sources: &Sources, file: FileId, word: Word) -> &str {
     sources.slice(Span { file, start: word.start, len: word.len })
-}
-
-/// A `key=value` tail among words: the key's index, and the first and one-past-last index of the value.
-pub(super) fn pairs(words: &[Word]) -> impl Iterator<Item = (usize, std::ops::Range<usize>)> {
-    let is_equals = |at: usize| words.get(at).is_some_and(|word| word.form == WordForm::Equals);
-    let mut at = 0;
-    std::iter::from_fn(move || {
-        while at < words.len() && !is_equals(at + 1) {
-            at += 1;
-        }
-        if at >= words.len() {
-            return None;
-        }
-        let key = at;
-        let first = key + 2;
-        let mut end = first;
-        while end < words.len() && !is_equals(end + 1) && !is_equals(end) {
-            end += 1;
-        }
-        at = end.max(key + 2);
-        Some((key, first.min(words.len())..end.max(first).min(words.len())))
-    })
 }

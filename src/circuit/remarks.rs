@@ -41,6 +41,7 @@ pub(super) enum Topic {
     RestsOnItself,
     UnknownParameter,
     NotFitted,
+    OpenPin,
 }
 
 impl Topic {
@@ -86,6 +87,7 @@ impl Topic {
             Self::UnknownValue => (Note, "values that could not be worked out are unknown: {}"),
             Self::RestsOnItself => (Warning, "parameters that rest on themselves have no value: {}"),
             Self::UnknownParameter => (Note, "parameters that nothing gives a value: {}"),
+            Self::OpenPin => (Note, "pins on these names are taken as not connected, each alone: {}"),
             Self::NotFitted => (Note, "marked as not fitted, so taken as not there: {}"),
         }
     }

@@ -107,7 +107,7 @@ impl Gatherer<'_> {
         self.program.notices.extend(decoded.notice);
         let text = decoded.text;
         let file = self.sources.add(shown, text);
-        let deck = netlist::read(file, self.sources.text(file));
+        let deck = netlist::read_included(file, self.sources.text(file));
         self.program.notices.extend(deck.notices.iter().cloned());
         self.program.decks.push(deck);
         let deck = self.program.decks.len() - 1;
