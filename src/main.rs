@@ -33,7 +33,7 @@ fn main() -> ExitCode {
             let look = cli.look(&arguments.output);
             let mut worst = Status::default();
             let written = into_sink(arguments.output.to.as_deref(), |out| {
-                let reviews = arguments.netlists.iter().map(|netlist| review(netlist, &options));
+                let reviews = arguments.netlists.iter().flat_map(|netlist| review(netlist, &options));
                 let mut seen = reviews.inspect(|review| worst = worst.max(rule.status(review)));
                 let written = write_reviews(out, &mut seen, arguments.output.format(), look);
                 // A reader that went away early must not hide what the other netlists come to.

@@ -119,6 +119,12 @@ impl Program {
         self.definitions.iter().filter(|(_, definition)| !definition.hidden)
     }
 
+    /// The type words of the parts in the body of `definition`, each as often as it stands there.
+    pub(crate) fn part_types_in(&self, definition: &Definition) -> impl Iterator<Item = Name> {
+        let template = Id::new(definition.scope.index());
+        self.templates[template].parts.iter().filter_map(|part| part.part_type)
+    }
+
     /// The statement at `line` with its words.
     pub(crate) fn line(&self, line: Line) -> (&Statement, &[Word]) {
         let deck = &self.decks[line.deck as usize];

@@ -59,12 +59,12 @@ impl Template {
         if !self.text.contains('{') {
             return Ok(self.text.clone());
         }
-        let mut context: BTreeMap<&str, BTreeMap<&str, Value>> = BTreeMap::new();
+        let mut context: BTreeMap<&str, BTreeMap<String, Value>> = BTreeMap::new();
         for &slot in &self.slots {
             let def = vocabulary.def(slot);
-            context.entry(slot.scope.name()).or_default().insert(def.field, value_of(def.kind, view, slot));
+            context.entry(slot.scope.name()).or_default().insert(def.field.to_owned(), value_of(def.kind, view, slot));
         }
-        let limit_values = limits.iter().zip(view.limits).map(|((name, _), value)| (name.as_str(), Value::from(*value)));
+        let limit_values = limits.iter().zip(view.limits).map(|((name, _), value)| (name.clone(), Value::from(*value)));
         context.insert("limits", limit_values.collect());
         let mut environment = Environment::new();
         environment.set_undefined_behavior(UndefinedBehavior::Strict);

@@ -10,7 +10,9 @@ use crate::circuit::model::{Circuit, Element, Net};
 use crate::connect::graph::{Connectivity, Pin};
 use crate::connect::rails::Rails;
 
+use crate::base::names::Name;
 use crate::parts::library::Library;
+use crate::parts::profile::Profile;
 
 use super::array::Array;
 use super::nature::{Nature, Natures};
@@ -205,6 +207,21 @@ impl<'a> Board<'a> {
     /// Whether a person gave the net its name, not an exporter.
     pub(crate) fn has_given_name(&self, net: Id<Net>) -> bool {
         is_given(self.circuit.names.text(self.circuit.nets[net].name))
+    }
+
+    /// Parts whose type is nearly that of a sink array and that no profile, family or look-alike knows.
+    pub(crate) fn near_arrays(&self) -> Vec<(Id<Element>, &'a Profile)> {
+        let mut known: FxHashMap<Name, Option<&'a Profile>> = FxHashMap::default();
+        let mut near = Vec::new();
+        for (id, element) in self.circuit.elements.iter() {
+            let (true, Some(part_type)) = (element.fitted && element.pin_count > 2, element.part_type) else { continue };
+            if !matches!(self.natures.of(id), Nature::Block) {
+                continue;
+            }
+            let found = known.entry(part_type).or_insert_with(|| self.library.near(self.circuit.names.text(part_type)));
+            near.extend(found.map(|profile| (id, profile)));
+        }
+        near
     }
 
     /// Whether the netlist shows more than one return.

@@ -6,6 +6,7 @@ pub(crate) mod array;
 pub(crate) mod board;
 pub(crate) mod branch;
 pub(crate) mod cut;
+pub(crate) mod definition;
 pub(crate) mod driver;
 pub(crate) mod find;
 pub(crate) mod links;

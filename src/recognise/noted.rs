@@ -1,13 +1,17 @@
 //! What the notes file says, found on the board: loads, nets and parts by number instead of by name.
 
+use std::collections::BTreeMap;
+
 use rustc_hash::FxHashMap;
 
-use crate::base::quantity::Ohms;
+use crate::base::quantity::{Ohms, Volts};
+use crate::base::span::Span;
 use crate::base::table::Id;
 use crate::circuit::model::{Circuit, Element, Net};
 use crate::connect::graph::Pin;
-use crate::notes::model::{At, DriverNotes, LoadNotes, NetNotes, Notes, PartNotes, TypeNotes};
-use crate::notes::word::DriverKind;
+use crate::connect::rails::{NetNote, NotedRole};
+use crate::notes::model::{At, DriverNotes, LoadNotes, NetNotes, Notes, PartNotes, RailNotes, TypeNotes};
+use crate::notes::word::{DriverKind, NetRole};
 
 use super::board::PinUse;
 
@@ -111,6 +115,35 @@ impl<'n> Noted<'n> {
         noted
     }
 
+    /// The parts that the notes give a profile.
+    pub(crate) fn profiles(&self) -> FxHashMap<Id<Element>, String> {
+        let profile = |part: &PartNotes| part.profile.as_ref().map(|said| said.value.clone());
+        self.parts.iter().filter_map(|(&element, part)| Some((element, profile(part)?))).collect()
+    }
+
+    /// What the notes say of rails and of nets' roles, sorted by net.
+    pub(crate) fn rails(&self, notes: &Notes, directory: Option<&Directory>) -> Vec<(Id<Net>, NetNote)> {
+        let Some(directory) = directory else { return Vec::new() };
+        let mut by_net: BTreeMap<Id<Net>, NetNote> = BTreeMap::new();
+        for rail in &notes.rails {
+            let Some(net) = directory.net(&rail.name.value) else { continue };
+            let note = by_net.entry(net).or_default();
+            note.level = level_of(&rail.says);
+            note.role = Some(NotedRole::Rail);
+            note.reference = rail.says.return_net.as_ref().and_then(|said| directory.net(&said.value));
+        }
+        for (&net, says) in &self.nets {
+            if let Some(role) = &says.role {
+                by_net.entry(net).or_default().role = Some(match role.value {
+                    NetRole::Rail => NotedRole::Rail,
+                    NetRole::Return => NotedRole::Return,
+                    NetRole::Signal => NotedRole::Signal,
+                });
+            }
+        }
+        by_net.into_iter().collect()
+    }
+
     /// What the notes say of `net`.
     pub(crate) fn net(&self, net: Id<Net>) -> Option<&'n NetNotes> {
         self.nets.get(&net).copied()
@@ -190,6 +223,24 @@ impl<'n> Noted<'n> {
             }
         }
     }
+}
+
+/// Least, expected and greatest voltage, the place, and whether the tolerance is stated.
+fn level_of(rail: &RailNotes) -> Option<(Volts, Volts, Volts, Span, bool)> {
+    let (least, most) = (rail.volts_min.as_ref(), rail.volts_max.as_ref());
+    let at = rail.volts.as_ref().or(least).or(most)?.at;
+    let nominal = match (&rail.volts, least, most) {
+        (Some(volts), _, _) => volts.value.0,
+        (None, Some(least), Some(most)) => (least.value.0 + most.value.0) / 2.0,
+        (None, Some(only), None) | (None, None, Some(only)) => only.value.0,
+        (None, None, None) => return None,
+    };
+    let share = rail.tolerance.as_ref().map(|said| said.value);
+    let spread = nominal.abs() * share.unwrap_or(0.0);
+    let low = least.map_or(nominal - spread, |said| said.value.0);
+    let high = most.map_or(nominal + spread, |said| said.value.0);
+    let stated = share.is_some() || (least.is_some() && most.is_some());
+    Some((Volts(low), Volts(nominal), Volts(high), at, stated))
 }
 
 fn channel_of(at: &At) -> Option<(String, u32)> {

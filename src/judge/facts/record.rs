@@ -46,6 +46,10 @@ facts! {
     }
 }
 
+/// Facts that stand while the pin map is in doubt: they speak of the map itself.
+pub(crate) const STANDS_IN_DOUBT: [&str; 8] =
+    ["name", "part_type", "profile", "pins_from", "pins_by_order", "pins_make_sense", "pins_swapped", "pins_swapped_how"];
+
 impl Record {
     /// The facts of one array.
     pub(crate) fn of(site: &Site<'_>) -> Self {
@@ -97,7 +101,8 @@ impl Record {
     }
 }
 
-fn pins_confirmed(site: &Site<'_>) -> bool {
+/// Whether the notes say that the pins were checked against the part.
+pub(crate) fn pins_confirmed(site: &Site<'_>) -> bool {
     site.array.elements.iter().any(|&element| {
         site.board.noted.part(element).and_then(|part| part.pins_confirmed.as_ref()).is_some_and(|said| said.value)
     })

@@ -1,8 +1,15 @@
-//! The pipeline: one line a stage, every stage's problems gathered.
+//! A review: one board read and judged. The pipeline that makes it stands in [`pipeline`].
+
+mod input;
+mod known;
+mod pipeline;
+mod subjects;
+mod summary;
 
 use std::path::{Path, PathBuf};
+use std::sync::Arc;
 
-use crate::base::notice::{Notice, Severity};
+use crate::base::notice::Notice;
 use crate::base::sources::Sources;
 use crate::judge::finding::{Class, Judged, Verdict};
 
@@ -37,31 +44,43 @@ pub struct Review {
     /// What was taken for granted: text and evidence.
     pub(crate) assumptions: Vec<(String, String)>,
     /// The input's text, for carets.
-    pub(crate) sources: Sources,
+    pub(crate) sources: Arc<Sources>,
 }
 
 /// Reads the netlist and judges it; `-` is standard input. What goes wrong stands in the review.
+///
+/// One review a board: a file without an element at top level holds a board for each definition that nobody uses.
 #[must_use]
-pub fn review(netlist: &Path, options: &Options) -> Review {
+pub fn review(netlist: &Path, options: &Options) -> Vec<Review> {
     let name = netlist.to_string_lossy().into_owned();
-    let error = std::fs::read(netlist)
-        .err()
-        .map(|cause| Notice::general(Severity::Error, format!("{name} could not be read: {cause}")));
-    Review {
-        netlist: name,
-        notes: options.notes.as_ref().map(|notes| notes.to_string_lossy().into_owned()),
-        error,
-        read_in_part: false,
-        problems: Vec::new(),
-        arrays: Vec::new(),
-        judged: Judged::default(),
-        not_judged: Vec::new(),
-        assumptions: Vec::new(),
-        sources: Sources::default(),
+    match input::read(netlist, options) {
+        Ok(input) => pipeline::run(&name, input),
+        Err(notice) => vec![Review::unreadable(name, notice)],
     }
 }
 
 impl Review {
+    /// A review of a netlist that could not be read.
+    fn unreadable(netlist: String, error: Notice) -> Self {
+        Self { error: Some(error), ..Self::empty(netlist) }
+    }
+
+    /// A review that says nothing yet.
+    fn empty(netlist: String) -> Self {
+        Self {
+            netlist,
+            notes: None,
+            error: None,
+            read_in_part: false,
+            problems: Vec::new(),
+            arrays: Vec::new(),
+            judged: Judged::default(),
+            not_judged: Vec::new(),
+            assumptions: Vec::new(),
+            sources: Arc::default(),
+        }
+    }
+
     /// Whether something at or above `class` is broken; with `unproven` also whether something there is unproven.
     #[must_use]
     pub fn stops(&self, class: Class, unproven: bool) -> bool {
