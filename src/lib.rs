@@ -10,7 +10,9 @@ mod parts;
 mod recognise;
 mod report;
 mod review;
+mod trial;
 
 pub use judge::finding::{Class, Verdict};
 pub use report::{Format, Look, PartListing, SinkError, into_sink, manual, part_listing, write_reviews};
 pub use review::{Options, Review, review};
+pub use trial::{Trial, trials};

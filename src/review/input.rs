@@ -49,6 +49,20 @@ pub(super) fn read(netlist: &Path, options: &Options) -> Result<Input, Notice> {
     Ok(Input { sources, root: Root { file, folder }, notes, allowed: options.allow_include.clone(), notices })
 }
 
+/// A netlist and notes that are text already; only files of allowed folders could be included, and none is.
+///
+/// # Errors
+/// A text that is no netlist.
+pub(super) fn from_text(name: &str, netlist: &str, notes: Option<&str>) -> Result<Input, Notice> {
+    let mut sources = Sources::default();
+    let file = sources.add(name.to_owned(), netlist.to_owned());
+    if let Some(notice) = refuse(file, sources.text(file)) {
+        return Err(Notice { place: None, also: Vec::new(), ..notice });
+    }
+    let notes = notes.map(|text| (format!("notes of {name}"), text.to_owned()));
+    Ok(Input { sources, root: Root { file, folder: None }, notes, allowed: Vec::new(), notices: Vec::new() })
+}
+
 fn notes_of(netlist: &Path, options: &Options, standard_input: bool) -> Result<Option<(String, String)>, Notice> {
     let beside = netlist.with_extension("notes.toml");
     let path = match &options.notes {

@@ -11,6 +11,7 @@ use std::sync::Arc;
 
 use crate::base::notice::Notice;
 use crate::base::sources::Sources;
+use crate::judge::card::Card;
 use crate::judge::finding::{Class, Judged, Verdict};
 
 /// What a review may rest on beside the netlist.
@@ -54,9 +55,27 @@ pub struct Review {
 pub fn review(netlist: &Path, options: &Options) -> Vec<Review> {
     let name = netlist.to_string_lossy().into_owned();
     match input::read(netlist, options) {
-        Ok(input) => pipeline::run(&name, input),
+        Ok(input) => pipeline::run(&name, input, false),
         Err(notice) => vec![Review::unreadable(name, notice)],
     }
+}
+
+/// Judges a netlist that is text, with notes that are text: nothing is read from any folder. What holds is kept too.
+pub(crate) fn review_text(name: &str, netlist: &str, notes: Option<&str>) -> Vec<Review> {
+    match input::from_text(name, netlist, notes) {
+        Ok(input) => pipeline::run(name, input, true),
+        Err(notice) => vec![Review::unreadable(name.to_owned(), notice)],
+    }
+}
+
+/// The names of a netlist's top-level nets as spelled, in order; none where it cannot be read.
+pub(crate) fn net_names(netlist: &str) -> Vec<String> {
+    input::from_text("netlist", netlist, None).map_or_else(|_| Vec::new(), pipeline::net_names)
+}
+
+/// The bundled cards, and those that were refused.
+pub(crate) fn shelf() -> (&'static [Card], &'static [Notice]) {
+    pipeline::shelf()
 }
 
 impl Review {

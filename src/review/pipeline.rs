@@ -13,6 +13,7 @@ use crate::circuit::{self, Expanded, Limits};
 use crate::connect::graph::Connectivity;
 use crate::connect::rails::Rails;
 use crate::judge::fact::{Fact, SCOPES, Scope};
+use crate::judge::card::Card;
 use crate::judge::facts;
 use crate::judge::facts::rail::Joint;
 use crate::judge::predicate::Reach;
@@ -53,6 +54,28 @@ fn rules() -> &'static Rules {
     })
 }
 
+/// The bundled cards, and those that were refused.
+pub(super) fn shelf() -> (&'static [Card], &'static [Notice]) {
+    (&rules().shelf.cards, &rules().refused)
+}
+
+/// The names of the top-level nets of the first board in `input`.
+pub(super) fn net_names(input: Input) -> Vec<String> {
+    let Input { mut sources, root, .. } = input;
+    let Ok(program) = circuit::load(&mut sources, &[root], &[], &Limits::BOARD) else { return Vec::new() };
+    let closed = closed(&program, &rules().library);
+    let Some(&board) = circuit::boards(&program, &closed).first() else { return Vec::new() };
+    match circuit::expand(&program, &sources, board, &closed, &Limits::BOARD) {
+        Ok(Expanded { circuit, .. }) => circuit
+            .nets
+            .iter()
+            .filter(|(id, net)| net.sheet.index() == 0 && circuit.elements.ids().any(|element| circuit.pins(element).contains(id)))
+            .map(|(_, net)| circuit.names.text(net.name).to_owned())
+            .collect(),
+        Err(_) => Vec::new(),
+    }
+}
+
 /// What came of one part of a board.
 #[derive(Default)]
 struct Came {
@@ -63,7 +86,7 @@ struct Came {
 }
 
 /// Reads, expands, connects, recognises and judges every board in `input`.
-pub(super) fn run(name: &str, input: Input) -> Vec<Review> {
+pub(super) fn run(name: &str, input: Input, held: bool) -> Vec<Review> {
     let rules = rules();
     let Input { mut sources, root, notes, allowed, mut notices } = input;
     notices.extend(rules.refused.iter().cloned());
@@ -103,7 +126,7 @@ pub(super) fn run(name: &str, input: Input) -> Vec<Review> {
                 Ok(expanded) => {
                     review.read_in_part = expanded.circuit.unread_lines > 0 || program.missing_files > 0;
                     if review.error.is_none() {
-                        judge_board(rules, expanded, &noted.1, &mut review);
+                        judge_board(rules, expanded, &noted.1, held, &mut review);
                     }
                 }
                 Err(notice) => review.error = Some(*notice),
@@ -114,7 +137,7 @@ pub(super) fn run(name: &str, input: Input) -> Vec<Review> {
 }
 
 /// Judges one flat circuit into `review`.
-fn judge_board(rules: &Rules, expanded: Expanded, notes: &Notes, review: &mut Review) {
+fn judge_board(rules: &Rules, expanded: Expanded, notes: &Notes, held: bool, review: &mut Review) {
     let Expanded { circuit, notices } = expanded;
     review.problems.extend(notices);
     let directory = has_names(notes).then(|| Directory::of(&circuit));
@@ -135,7 +158,7 @@ fn judge_board(rules: &Rules, expanded: Expanded, notes: &Notes, review: &mut Re
         }
     }
     let board = Board::new(&circuit, &connectivity, &rails, &natures, &noted, &rules.library, arrays);
-    let judge = Judge::new(&rules.shelf, false);
+    let judge = Judge::new(&rules.shelf, held);
     let whole = whole(&board);
     let arrays: Vec<Came> = (0..board.arrays.len()).into_par_iter().map(|number| array(&board, number, &judge, &whole)).collect();
     let mut judged = Partial::default();

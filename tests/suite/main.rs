@@ -1,3 +1,4 @@
 //! End to end: the program itself, over `fixtures/`.
 
+mod cards;
 mod reports;

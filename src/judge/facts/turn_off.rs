@@ -63,7 +63,11 @@ impl TurnOff {
                 Some(pin) => Fact::text(board.circuit.net_name(pin.net)).at(site.array.span, "the array"),
                 None => Fact::text(""),
             },
-            clamp_drain: drain(&supply_volts, &clamp_level, &ohms),
+            clamp_drain: match ways.by_clamp().any(|way| way.target == Target::OtherEnd) {
+                // One rail cannot stand above itself, whatever its tolerance.
+                true => Fact::number(0.0),
+                false => drain(&supply_volts, &clamp_level, &ohms),
+            },
             levels_apart: levels_apart(site, ways, &clamp_level),
             own_diode: Fact::flag(ways.list.iter().any(|way| matches!(way.by, By::OwnDiode | By::Zener))),
             supply_volts,
