@@ -173,26 +173,29 @@ impl Head {
         self.look_alikes.iter().find(alike).map(|row| row.why.as_str())
     }
 
-    /// Whether `spelling` nearly names this part: its number under a prefix one letter off or with a suffix that
-    /// nobody knows, or a number one character off under a prefix that only such parts bear.
-    pub(super) fn is_near(&self, spelling: &Spelling) -> bool {
-        let (prefix, core) = (spelling.prefix(), spelling.core());
+    /// Whether `spelling` bears this part's number, under a prefix at most one letter off or with an unknown suffix.
+    pub(super) fn shares_number(&self, spelling: &Spelling) -> bool {
+        let prefix = spelling.prefix();
         self.names.iter().any(|row| {
-            let same_number = row.numbers.iter().any(|number| {
-                core.strip_prefix(number.as_str()).is_some_and(|rest| !rest.starts_with(|c: char| c.is_ascii_digit()))
-            });
-            let close_prefix = row
-                .prefixes
-                .iter()
-                .filter(|p| !p.is_empty() && !prefix.is_empty())
-                .any(|known| known == prefix || known.len() > 2 && strsim::damerau_levenshtein(known, prefix) <= 1);
-            let close_number = self.near_prefixes.iter().any(|p| p == prefix)
+            let close = |known: &&String| {
+                !known.is_empty()
+                    && (*known == prefix || known.len() > 2 && strsim::damerau_levenshtein(known, prefix) <= 1)
+            };
+            row.prefixes.iter().any(|known| close(&known))
                 && row.numbers.iter().any(|number| {
-                    let digits = core.get(..number.len()).unwrap_or(core);
-                    strsim::damerau_levenshtein(number, digits) <= 1
-                });
-            same_number && close_prefix || close_number
+                    let rest = spelling.core().strip_prefix(number.as_str());
+                    rest.is_some_and(|rest| !rest.starts_with(|c: char| c.is_ascii_digit()))
+                })
         })
+    }
+
+    /// Whether `spelling` bears a number one character off this part's, under a prefix that only such parts bear.
+    pub(super) fn almost_shares_number(&self, spelling: &Spelling) -> bool {
+        self.near_prefixes.iter().any(|prefix| prefix == spelling.prefix())
+            && self.names.iter().flat_map(|row| &row.numbers).any(|number| {
+                let digits = spelling.core().get(..number.len()).unwrap_or(spelling.core());
+                strsim::damerau_levenshtein(number, digits) <= 1
+            })
     }
 }
 

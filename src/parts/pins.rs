@@ -241,21 +241,14 @@ impl Ports {
             });
             return PortRoles { roles: roles.collect(), cell: false };
         }
-        let cell: Vec<_> = ports.iter().map(|port| self.cell_role(&folded(port))).collect();
-        if cell.iter().flatten().any(|role| matches!(role, Role::Output(_))) {
-            let roles = cell.into_iter().zip(whole).map(|(cell, whole)| {
-                cell.or(match whole? {
-                    Found::Plain(role) => Some(role),
-                    Found::Numbered(..) => None,
-                })
-            });
-            return PortRoles { roles: roles.collect(), cell: true };
-        }
-        let plain = |found| match found {
+        let plain = |found: Option<Found>| match found {
             Some(Found::Plain(role)) => Some(role),
-            _ => None,
+            Some(Found::Numbered(..)) | None => None,
         };
-        PortRoles { roles: whole.into_iter().map(plain).collect(), cell: false }
+        let own: Vec<_> = ports.iter().map(|port| self.cell_role(&folded(port))).collect();
+        let cell = own.iter().flatten().any(|role| matches!(role, Role::Output(_)));
+        let roles = own.into_iter().zip(whole).map(|(own, found)| own.filter(|_| cell).or(plain(found)));
+        PortRoles { roles: roles.collect(), cell }
     }
 
     fn cell_role(&self, port: &str) -> Option<Role> {
@@ -333,3 +326,6 @@ pub(super) fn folded(name: &str) -> String {
         .map(|c| c.to_ascii_uppercase())
         .collect()
 }
+
+#[cfg(test)]
+mod tests;
