@@ -28,6 +28,9 @@ pub(crate) struct Head {
     /// Package codes that may follow a name.
     #[serde(default)]
     pub packages: Vec<PackageCodes>,
+    /// Packing letters that may follow a package code.
+    #[serde(default)]
+    pub tails: Vec<String>,
     /// Types that bear the number and are something else.
     #[serde(default)]
     pub look_alikes: Vec<LookAlike>,
@@ -72,11 +75,8 @@ pub(crate) struct NameRow {
 pub(crate) struct PackageCodes {
     /// Package name: `DIP-16`.
     pub package: String,
-    /// Letters that tell it, packing letters left out.
+    /// Letters that tell it, packing letters ([`Head::tails`]) left out.
     pub codes: Vec<String>,
-    /// Packing letters that may follow.
-    #[serde(default)]
-    pub tails: Vec<String>,
 }
 
 /// Types that look like the part by number.
@@ -154,7 +154,7 @@ impl Head {
                 row.codes.iter().any(|code| {
                     rest.strip_prefix(code.as_str()).is_some_and(|tail| {
                         let tail = after_seam(tail);
-                        tail.is_empty() || row.tails.iter().any(|known| known == tail)
+                        tail.is_empty() || self.tails.iter().any(|known| known == tail)
                     })
                 })
             })

@@ -156,7 +156,7 @@ const SPELLINGS: [(&str, &str); 137] = [
     ("7404", "none"),
     ("TBD62003APG", "x62003@DIP-16"),
     ("TBD62003AFG", "x62003@SOP-16"),
-    ("TBD62083AFNG", "x62083@SOP-18"),
+    ("TBD62083AFNG", "x62083@SSOP-18"),
     ("TD62783AP", "look-alike"),
     ("UDN2981A", "look-alike"),
     ("TPIC6B595", "x6b595"),

@@ -29,7 +29,7 @@ fn every_file_reads_whole() {
 fn a_head_read_alone_is_the_head_of_the_whole_file() {
     for (stem, text) in PARTS {
         let whole: Value = toml::from_str(text).unwrap();
-        let keys = ["name", "form", "what", "names", "packages", "look_alikes", "near_prefixes"];
+        let keys = ["name", "form", "what", "names", "packages", "tails", "look_alikes", "near_prefixes"];
         let file = text.find("\n[").map_or(*text, |at| &text[..at]);
         let head: Value = toml::from_str(file).unwrap();
         for key in keys {
@@ -174,8 +174,8 @@ fn limits_span_the_makers_and_keep_special_grades_apart() {
     assert_eq!((tables(None), tables(Some("ai")), tables(Some("q"))), (Volts(2.4), Volts(2.7), Volts(2.7)));
     assert_eq!(x2003.output.peak_a.highest(None).unwrap().value, Amps(0.6));
     assert_eq!(x2003.output.ground_total_a.lowest(None).unwrap().value, Amps(2.5));
-    assert!(x2003.output.sustain_v.lowest(None).unwrap().from.from_memory());
-    assert!(!x2003.output.max_v.lowest(None).unwrap().from.from_memory());
+    assert!(x2003.output.sustain_v.lowest(None).unwrap().from.is_memory());
+    assert!(!x2003.output.max_v.lowest(None).unwrap().from.is_memory());
 }
 
 /// Pins of the map with `map.len()` pins, as the published drawing has them.
