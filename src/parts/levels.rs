@@ -128,3 +128,6 @@ impl TryFrom<WrittenLevel> for Level {
         Ok(Self { is, from: written.from })
     }
 }
+
+#[cfg(test)]
+mod tests;

@@ -202,7 +202,10 @@ impl Library {
         if self.find(type_text) != Match::None || self.by_type(PartClass::Block, type_text).is_some() {
             return None;
         }
-        let near = self.files.iter().find(|file| file.head.form == Form::Array && file.head.is_near(&spelling))?;
+        let arrays = || self.files.iter().filter(|file| file.head.form == Form::Array);
+        let near = arrays()
+            .find(|file| file.head.shares_number(&spelling))
+            .or_else(|| arrays().find(|file| file.head.almost_shares_number(&spelling)))?;
         self.whole(near)
     }
 
@@ -327,3 +330,6 @@ impl Refused {
         Self { message: format!("the file is named `{stem}` and calls itself `{name}`"), place: 0..0 }
     }
 }
+
+#[cfg(test)]
+mod tests;

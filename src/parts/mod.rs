@@ -4,6 +4,7 @@
 #![allow(dead_code)]
 
 pub(crate) mod clamp;
+mod class;
 pub(crate) mod family;
 pub(crate) mod input;
 pub(crate) mod levels;

@@ -28,6 +28,9 @@ pub(crate) struct Head {
     /// Package codes that may follow a name.
     #[serde(default)]
     pub packages: Vec<PackageCodes>,
+    /// Packing letters that may follow a package code.
+    #[serde(default)]
+    pub tails: Vec<String>,
     /// Types that bear the number and are something else.
     #[serde(default)]
     pub look_alikes: Vec<LookAlike>,
@@ -72,11 +75,8 @@ pub(crate) struct NameRow {
 pub(crate) struct PackageCodes {
     /// Package name: `DIP-16`.
     pub package: String,
-    /// Letters that tell it, packing letters left out.
+    /// Letters that tell it, packing letters ([`Head::tails`]) left out.
     pub codes: Vec<String>,
-    /// Packing letters that may follow.
-    #[serde(default)]
-    pub tails: Vec<String>,
 }
 
 /// Types that look like the part by number.
@@ -154,7 +154,7 @@ impl Head {
                 row.codes.iter().any(|code| {
                     rest.strip_prefix(code.as_str()).is_some_and(|tail| {
                         let tail = after_seam(tail);
-                        tail.is_empty() || row.tails.iter().any(|known| known == tail)
+                        tail.is_empty() || self.tails.iter().any(|known| known == tail)
                     })
                 })
             })
@@ -173,26 +173,29 @@ impl Head {
         self.look_alikes.iter().find(alike).map(|row| row.why.as_str())
     }
 
-    /// Whether `spelling` nearly names this part: its number under a prefix one letter off or with a suffix that
-    /// nobody knows, or a number one character off under a prefix that only such parts bear.
-    pub(super) fn is_near(&self, spelling: &Spelling) -> bool {
-        let (prefix, core) = (spelling.prefix(), spelling.core());
+    /// Whether `spelling` bears this part's number, under a prefix at most one letter off or with an unknown suffix.
+    pub(super) fn shares_number(&self, spelling: &Spelling) -> bool {
+        let prefix = spelling.prefix();
         self.names.iter().any(|row| {
-            let same_number = row.numbers.iter().any(|number| {
-                core.strip_prefix(number.as_str()).is_some_and(|rest| !rest.starts_with(|c: char| c.is_ascii_digit()))
-            });
-            let close_prefix = row
-                .prefixes
-                .iter()
-                .filter(|p| !p.is_empty() && !prefix.is_empty())
-                .any(|known| known == prefix || known.len() > 2 && strsim::damerau_levenshtein(known, prefix) <= 1);
-            let close_number = self.near_prefixes.iter().any(|p| p == prefix)
+            let close = |known: &&String| {
+                !known.is_empty()
+                    && (*known == prefix || known.len() > 2 && strsim::damerau_levenshtein(known, prefix) <= 1)
+            };
+            row.prefixes.iter().any(|known| close(&known))
                 && row.numbers.iter().any(|number| {
-                    let digits = core.get(..number.len()).unwrap_or(core);
-                    strsim::damerau_levenshtein(number, digits) <= 1
-                });
-            same_number && close_prefix || close_number
+                    let rest = spelling.core().strip_prefix(number.as_str());
+                    rest.is_some_and(|rest| !rest.starts_with(|c: char| c.is_ascii_digit()))
+                })
         })
+    }
+
+    /// Whether `spelling` bears a number one character off this part's, under a prefix that only such parts bear.
+    pub(super) fn almost_shares_number(&self, spelling: &Spelling) -> bool {
+        self.near_prefixes.iter().any(|prefix| prefix == spelling.prefix())
+            && self.names.iter().flat_map(|row| &row.numbers).any(|number| {
+                let digits = spelling.core().get(..number.len()).unwrap_or(spelling.core());
+                strsim::damerau_levenshtein(number, digits) <= 1
+            })
     }
 }
 

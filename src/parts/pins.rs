@@ -223,7 +223,7 @@ impl Ports {
     pub(crate) fn roles(&self, ports: &[&str], channels: u8, supply: bool) -> PortRoles {
         let whole: Vec<_> = ports.iter().map(|port| self.role(&folded(port), supply)).collect();
         if whole.iter().flatten().any(|found| matches!(found, Found::Numbered(..))) {
-            let zero_based = |maker: fn(u8) -> Role| {
+            let zero_based = |maker: Maker| {
                 whole.iter().flatten().any(|found| matches!(found, Found::Numbered(m, 0) if m(1) == maker(1)))
             };
             let (input_shift, output_shift) = (zero_based(Role::Input), zero_based(Role::Output));
@@ -241,21 +241,14 @@ impl Ports {
             });
             return PortRoles { roles: roles.collect(), cell: false };
         }
-        let cell: Vec<_> = ports.iter().map(|port| self.cell_role(&folded(port))).collect();
-        if cell.iter().flatten().any(|role| matches!(role, Role::Output(_))) {
-            let roles = cell.into_iter().zip(whole).map(|(cell, whole)| {
-                cell.or(match whole? {
-                    Found::Plain(role) => Some(role),
-                    Found::Numbered(..) => None,
-                })
-            });
-            return PortRoles { roles: roles.collect(), cell: true };
-        }
-        let plain = |found| match found {
+        let plain = |found: Option<Found>| match found {
             Some(Found::Plain(role)) => Some(role),
-            _ => None,
+            Some(Found::Numbered(..)) | None => None,
         };
-        PortRoles { roles: whole.into_iter().map(plain).collect(), cell: false }
+        let own: Vec<_> = ports.iter().map(|port| self.cell_role(&folded(port))).collect();
+        let cell = own.iter().flatten().any(|role| matches!(role, Role::Output(_)));
+        let roles = own.into_iter().zip(whole).map(|(own, found)| own.filter(|_| cell).or(plain(found)));
+        PortRoles { roles: roles.collect(), cell }
     }
 
     fn cell_role(&self, port: &str) -> Option<Role> {
@@ -272,7 +265,7 @@ impl Ports {
     }
 
     fn role(&self, port: &str, supply: bool) -> Option<Found> {
-        let numbered: [(&[String], fn(u8) -> Role); 3] =
+        let numbered: [(&[String], Maker); 3] =
             [(&self.input, Role::Input), (&self.second_input, Role::SecondInput), (&self.output, Role::Output)];
         for (patterns, maker) in numbered {
             if let Some(number) = patterns.iter().find_map(|pattern| number_in(pattern, port)) {
@@ -307,11 +300,14 @@ impl Ports {
     }
 }
 
+/// Makes a channel's role from its number.
+type Maker = fn(u8) -> Role;
+
 /// A role that a port name tells; a channel's number still as written.
 #[derive(Clone, Copy)]
 enum Found {
     Plain(Role),
-    Numbered(fn(u8) -> Role, u8),
+    Numbered(Maker, u8),
 }
 
 /// The number that stands in `port` where `pattern` has its `#` or, one more, where it has its `@`.
@@ -333,3 +329,6 @@ pub(super) fn folded(name: &str) -> String {
         .map(|c| c.to_ascii_uppercase())
         .collect()
 }
+
+#[cfg(test)]
+mod tests;

@@ -208,3 +208,6 @@ pub(crate) struct Remark {
     /// Who says so.
     pub from: Source,
 }
+
+#[cfg(test)]
+mod tests;

@@ -44,7 +44,7 @@ impl Source {
     }
 
     /// No document stands behind the number: it may leave a verdict unproven, never make it broken.
-    pub(crate) fn from_memory(&self) -> bool {
+    pub(crate) fn is_memory(&self) -> bool {
         self.0.contains("from memory")
     }
 }

@@ -43,12 +43,13 @@ pub(super) fn read_value(form: &NumberForm, text: &str) -> Option<(usize, Option
             (*low..=*high).contains(&value).then_some((*digits, None))
         }
         NumberForm::Volts => {
-            let digits = |text: &str| text.bytes().take(4).take_while(u8::is_ascii_digit).count();
+            let digits = |text: &str| text.bytes().take(8).take_while(u8::is_ascii_digit).count();
             let whole = digits(text);
             let point = text.as_bytes().get(whole).copied();
             let rest = text.get(whole + 1..).unwrap_or("");
             let fraction = if matches!(point, Some(b'V' | b'.')) { digits(rest) } else { 0 };
-            if whole == 0 {
+            // No suppressor is named after a kilovolt.
+            if whole == 0 || whole > 3 || fraction > 2 {
                 return None;
             }
             let units: f64 = text.get(..whole)?.parse().ok()?;
