@@ -196,3 +196,16 @@ fn table(x: f64, arguments: &[f64]) -> Option<f64> {
     }
     before.map(|(_, y)| y)
 }
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn a_table_is_straight_between_its_points_and_flat_outside() {
+        let points = [0.0, 1.0, 10.0, 2.0, 20.0];
+        for (x, y) in [(0.0, 10.0), (1.0, 10.0), (1.5, 15.0), (2.0, 20.0), (9.0, 20.0)] {
+            assert_eq!(table(x, &points), Some(y));
+        }
+        assert_eq!(table(1.0, &[0.0, 1.0]), None);
+    }
+}

@@ -20,6 +20,7 @@ mod lines;
 pub(crate) mod model;
 pub(crate) mod number;
 mod reader;
+pub(crate) mod refuse;
 mod remarks;
 pub(crate) mod source;
 mod spice;
@@ -40,3 +41,6 @@ pub(crate) fn read(file: FileId, text: &str) -> Deck {
 pub(crate) fn read_included(file: FileId, text: &str) -> Deck {
     reader::Reader::new(file, text).run(false)
 }
+
+#[cfg(test)]
+mod tests;

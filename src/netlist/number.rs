@@ -2,7 +2,7 @@
 
 use nom::branch::alt;
 use nom::bytes::complete::{tag_no_case, take_while_m_n};
-use nom::character::complete::{char, digit0, digit1, one_of};
+use nom::character::complete::{char, digit1, one_of};
 use nom::combinator::{map, opt, recognize, value, verify};
 use nom::{IResult, Parser};
 
@@ -76,7 +76,9 @@ enum Scale {
 
 /// Digits with an optional sign, point and exponent: `-1.5e-3`, `.5`, `5.`.
 fn mantissa(text: &str) -> IResult<&str, &str> {
-    let fraction = recognize((digit1, opt((char('.'), digit0))));
+    // Not `digit0`: at the end of a text nom 8.0 gives its rest as the empty stretch at the start, and `recognize`
+    // then loses the digits.
+    let fraction = recognize((digit1, opt((char('.'), opt(digit1)))));
     let exponent = (one_of("eE"), opt(one_of("+-")), digit1);
     recognize((opt(one_of("+-")), alt((fraction, recognize((char('.'), digit1)))), opt(exponent))).parse(text)
 }
@@ -210,6 +212,8 @@ mod tests {
             ("2.000u", 2e-6),
             ("24VAC", 24.0),
             ("1e3k", 1e6),
+            ("1.5", 1.5),
+            ("0.99", 0.99),
         ] {
             check(text, Some(value));
         }

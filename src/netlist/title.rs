@@ -42,7 +42,8 @@ pub(super) fn is_part(text: &str, words: &[Word], defined: impl Fn(&str, Stateme
 pub(super) fn looks_like_part(text: &str, words: &[Word]) -> bool {
     let numbered = words.first().is_some_and(|word| word.text(text).ends_with(|c: char| c.is_ascii_digit()));
     let designator = words.first().is_some_and(|word| is_designator(word.text(text)));
-    numbered && designator && words.len() >= 4
+    let name = |word: &Word| word.text(text).bytes().any(|byte| byte.is_ascii_alphanumeric());
+    numbered && designator && words.len() >= 4 && words.iter().take(4).all(name)
 }
 
 /// Short, or with a digit: words of prose are neither.

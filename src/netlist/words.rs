@@ -361,41 +361,35 @@ pub(crate) struct Assignment {
 
 /// The `key=value` pairs among `words` of `text`. A value runs up to the next key.
 pub(crate) fn assignments<'w>(text: &'w str, words: &'w [Word]) -> impl Iterator<Item = Assignment> + 'w {
-    let mut at = 0;
+    let mut at = next_pair(text, words, 0);
     std::iter::from_fn(move || {
         loop {
-            let key_at = at + words.get(at..)?.iter().position(|word| word.form == WordForm::Equals)?;
-            at = key_at + 1;
-            let Some(key) = key_at.checked_sub(1).and_then(|before| words.get(before)) else { continue };
-            if !is_key(text, *key) {
-                continue;
+            let equals = at?;
+            let next = next_pair(text, words, equals + 1);
+            at = next;
+            let key = *words.get(equals - 1)?;
+            let value = words.get(equals + 1..next.map_or(words.len(), |next| next - 1))?;
+            if let Some(whole) = stretch(value) {
+                return Some(Assignment { key, value: whole, single: value.len() == 1 });
             }
-            let rest = words.get(at..)?;
-            let next = rest.iter().position(|word| word.form == WordForm::Equals);
-            // `a==b` and `a>=b` are no keys: their `=` belongs to the value.
-            let length = match next {
-                Some(next) => end_of_value(text, rest, next),
-                None => rest.len(),
-            };
-            let Some(value) = rest.get(..length).and_then(|value| stretch(value)) else { continue };
-            at += length;
-            return Some(Assignment { key: *key, value, single: length == 1 });
         }
     })
 }
 
-/// How many words of `rest` belong to the value when the next `=` stands at `next`.
-fn end_of_value(text: &str, rest: &[Word], mut next: usize) -> usize {
-    loop {
-        if let Some(key) = next.checked_sub(1).filter(|&key| rest.get(key).is_some_and(|word| is_key(text, *word))) {
-            return key;
-        }
-        let after = next + 1;
-        match rest.get(after..).and_then(|rest| rest.iter().position(|word| word.form == WordForm::Equals)) {
-            Some(further) => next = after + further,
-            None => return rest.len(),
-        }
-    }
+/// The first `=` from `from` on that stands between a key and its value; those of `a==b` and `a>=b` do not.
+fn next_pair(text: &str, words: &[Word], from: usize) -> Option<usize> {
+    let equals = |at: usize| words.get(at).is_some_and(|word| word.form == WordForm::Equals);
+    // The key of the last pair is no value: a key stands at least two words after an `=`.
+    (from.max(1)..words.len()).find(|&at| {
+        let doubled =
+            equals(at + 1) || words.get(at).zip(words.get(at - 1)).is_some_and(|(b, a)| comparison(text, *a, *b));
+        equals(at) && !doubled && words.get(at - 1).is_some_and(|word| is_key(text, *word))
+    })
+}
+
+/// Whether the word before an `=` ends in what makes a comparison of it: `a>=b`.
+fn comparison(text: &str, before: Word, equals: Word) -> bool {
+    before.end() == equals.start as usize && before.text(text).ends_with(['<', '>', '!', '='])
 }
 
 fn is_key(text: &str, word: Word) -> bool {
