@@ -49,6 +49,34 @@ pub(super) fn expand(
     naming: Naming,
     limits: &Limits,
 ) -> Result<Expanded, Box<Notice>> {
+    let mut expander = expanded(program, sources, board, closed, naming, limits)?;
+    let notices = expander.notices();
+    Ok(Expanded { circuit: expander.circuit(), notices })
+}
+
+/// The same without a word about it.
+///
+/// # Errors
+/// As [`expand`].
+pub(super) fn silently(
+    program: &Program,
+    sources: &Sources,
+    board: Board,
+    closed: &HashSet<Id<Definition>>,
+    naming: Naming,
+    limits: &Limits,
+) -> Result<Circuit, Box<Notice>> {
+    Ok(expanded(program, sources, board, closed, naming, limits)?.circuit())
+}
+
+fn expanded<'a>(
+    program: &'a Program,
+    sources: &'a Sources,
+    board: Board,
+    closed: &'a HashSet<Id<Definition>>,
+    naming: Naming,
+    limits: &'a Limits,
+) -> Result<Expander<'a>, Box<Notice>> {
     let scope = match board {
         Board::Top => Id::new(0),
         Board::Definition(definition) => program.definitions[definition].scope,
@@ -76,7 +104,7 @@ pub(super) fn expand(
     };
     expander.reserve(row.elements);
     expander.board(board, scope)?;
-    Ok(expander.finish())
+    Ok(expander)
 }
 
 /// The circuit under way.
@@ -312,17 +340,17 @@ impl<'a> Expander<'a> {
         Ok(id)
     }
 
-    fn finish(mut self) -> Expanded {
-        self.circuit.unread_lines = self.plan.unread_lines + self.program.missing_files;
+    /// What was noticed.
+    fn notices(&mut self) -> Vec<Notice> {
         let mut remarks = std::mem::take(&mut self.plan.remarks);
         remarks.merge(&self.remarks);
         remarks.merge(&self.evaluator.remarks);
         let program = self.program;
-        let mut notices = remarks.notices(
+        let mut notices = std::mem::take(&mut self.plan.problems);
+        notices.extend(remarks.notices(
             || program.definitions().map(|(_, definition)| program.names.text(definition.name)),
             || program.models.iter().map(|(_, model)| program.names.text(model.name)),
-        );
-        notices.splice(0..0, std::mem::take(&mut self.plan.problems));
+        ));
         if let Some(span) = self.gnd_span {
             notices.push(match self.plan.between_grounds {
                 None => Notice::at(Severity::Note, span, "GND is taken as node 0"),
@@ -330,10 +358,15 @@ impl<'a> Expander<'a> {
                     .also(between, "this part stands between the two"),
             });
         }
+        notices
+    }
+
+    fn circuit(mut self) -> Circuit {
+        self.circuit.unread_lines = self.plan.unread_lines + self.program.missing_files;
         self.circuit.names = match self.names {
             Naming::All(names) | Naming::Used(names, _) => names,
         };
-        Expanded { circuit: self.circuit, notices }
+        self.circuit
     }
 }
 

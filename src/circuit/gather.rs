@@ -81,9 +81,12 @@ impl<'a> Gatherer<'a> {
     /// Sorts all lines.
     ///
     /// # Errors
-    /// A limit passed, or a file that includes itself.
+    /// A root that is no netlist, a limit passed, or a file that includes itself.
     pub(super) fn run(mut self, roots: &[Root]) -> Result<Program, Box<Notice>> {
         for root in roots {
+            if let Some(refusal) = netlist::refuse::refuse(root.file, self.sources.text(root.file)) {
+                return Err(Box::new(refusal));
+            }
             let deck = netlist::read(root.file, self.sources.text(root.file));
             self.program.notices.extend(deck.notices.iter().cloned());
             self.program.decks.push(deck);

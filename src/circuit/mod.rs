@@ -53,7 +53,7 @@ pub(crate) type Closed = HashSet<Id<Definition>>;
 /// the folders `allowed`.
 ///
 /// # Errors
-/// A limit passed, or a file that includes itself.
+/// A root that is no netlist, a limit passed, or a file that includes itself.
 pub(crate) fn load(
     sources: &mut Sources,
     roots: &[Root],
@@ -114,7 +114,7 @@ pub(crate) fn flatten(
 ) -> Option<Circuit> {
     let naming = nets::Naming::Used(Names::default(), HashMap::new());
     let board = Board::Definition(definition);
-    expand::expand(program, sources, board, closed, naming, &Limits::DEFINITION).ok().map(|flat| flat.circuit)
+    expand::silently(program, sources, board, closed, naming, &Limits::DEFINITION).ok()
 }
 
 #[cfg(test)]
