@@ -14,6 +14,7 @@ use super::template::{Amount, Local, Part, Shared, Tail, Template};
 use super::value;
 use crate::base::names::Name;
 use crate::base::notice::{Notice, Severity};
+use crate::base::quantity::Volts;
 use crate::base::sources::Sources;
 use crate::base::span::{FileId, Span};
 use crate::base::table::Id;
@@ -243,9 +244,10 @@ impl<'a> Expander<'a> {
                 }
             }
         }
-        let value = match part.formula {
-            None => part.value,
-            Some(formula) => self.value(part, formula, frame.env)?,
+        let value = match (part.formula, part.wave) {
+            (Some(formula), _) => self.value(part, formula, frame.env)?,
+            (None, Some(wave)) => self.wave(template, wave, frame.env)?,
+            (None, None) => part.value,
         };
         let model = match part.model {
             Some(line) => Some(self.model(line)?),
@@ -282,6 +284,22 @@ impl<'a> Expander<'a> {
             self.remarks.add(Topic::UnknownValue, part.span, self.program.names.text(part.refdes));
         }
         Ok(number.map_or(Value::Unknown, |number| value::of_class(part.class, number)))
+    }
+
+    /// The range of a source whose waveform rests on parameters.
+    fn wave(&mut self, template: &Template, wave: u32, env: Env) -> Result<Value, Box<Notice>> {
+        let (waveform, line) = &template.waves[wave as usize];
+        let file = self.program.file(*line);
+        let mut failed = None;
+        let range = waveform.range(&self.program.decks[line.deck as usize].words, &mut |word| {
+            let value = self.evaluator.at(env, word.span(file));
+            value.unwrap_or_else(|notice| {
+                failed.get_or_insert(notice);
+                None
+            })
+        });
+        let (low, high) = range.unwrap_or((f64::NAN, f64::NAN));
+        failed.map_or(Ok(Value::VoltsBetween(Volts(low), Volts(high))), Err)
     }
 
     fn tails(

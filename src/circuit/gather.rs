@@ -45,6 +45,8 @@ pub(super) struct Gatherer<'a> {
     pub(super) open: Vec<Open>,
     pub(super) bytes: usize,
     pub(super) includes: usize,
+    /// Steps of evaluating conditions.
+    pub(super) steps: usize,
     pub(super) remarks: Remarks,
 }
 
@@ -74,6 +76,7 @@ impl<'a> Gatherer<'a> {
             open: Vec::new(),
             bytes: 0,
             includes: 0,
+            steps: 0,
             remarks: Remarks::default(),
         }
     }

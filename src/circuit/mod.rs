@@ -61,7 +61,7 @@ pub(crate) fn load(
     limits: &Limits,
 ) -> Result<Program, Box<Notice>> {
     let mut program = gather::Gatherer::new(sources, roots, allowed, limits).run(roots)?;
-    compile::compile(&mut program, sources, limits)?;
+    compile::compile(&mut program, sources)?;
     Ok(program)
 }
 
@@ -105,16 +105,22 @@ pub(crate) fn expand(
 }
 
 /// Makes a small flat circuit of one definition alone, its ports marked, for a look at its structure. None where it
-/// is larger than [`Limits::DEFINITION`] or contains itself.
+/// is larger than [`Limits::DEFINITION`], contains itself, or would take more than the `left` elements of the budget
+/// for all definitions, which begins with [`Limits::FLATTENED`].
 pub(crate) fn flatten(
     program: &Program,
     sources: &Sources,
     definition: Id<Definition>,
     closed: &Closed,
+    left: &mut usize,
 ) -> Option<Circuit> {
     let naming = nets::Naming::Used(Names::default(), HashMap::new());
     let board = Board::Definition(definition);
-    expand::silently(program, sources, board, closed, naming, &Limits::DEFINITION).ok()
+    let limits = Limits { elements: Limits::DEFINITION.elements.min(*left), ..Limits::DEFINITION };
+    let flat = expand::silently(program, sources, board, closed, naming, &limits).ok();
+    // One that is too large was counted up to the limit.
+    *left = left.saturating_sub(flat.as_ref().map_or(limits.elements, |flat| flat.elements.len()).max(1));
+    flat
 }
 
 #[cfg(test)]
