@@ -137,6 +137,7 @@ impl Compiler<'_> {
             Ok(form) if form.nodes.len() <= usize::from(u16::MAX) => form,
             Ok(_) => return Err(passed("pins of one part", usize::from(u16::MAX), "", Some(span))),
             Err(problem) => {
+                template.problem_count += 1;
                 if template.problems.len() < PROBLEMS {
                     template.problems.push(problem.notice(file));
                 }

@@ -3,22 +3,19 @@
 use hashbrown::{HashMap, HashSet};
 
 use super::limits::Limits;
-use super::model::{BlockType, Circuit, Coupling, Element, Model, Net, Parameter, Sheet, Value};
+use super::model::{BlockType, Circuit, Coupling, Element, Model, Net, Sheet};
 use super::models;
 use super::nets::{GROUND, Naming, net};
 use super::params::{Env, Evaluator};
 use super::plan::Plan;
-use super::program::{Definition, Formula, ModelLine, Program, Scope};
-use super::remarks::{Remarks, Topic};
-use super::template::{Amount, Local, Part, Shared, Tail, Template};
-use super::value;
+use super::program::{Definition, ModelLine, Program, Scope};
+use super::remarks::Remarks;
+use super::template::{Local, Part, Shared, Tail, Template};
 use crate::base::names::Name;
 use crate::base::notice::{Notice, Severity};
-use crate::base::quantity::Volts;
 use crate::base::sources::Sources;
 use crate::base::span::{FileId, Span};
 use crate::base::table::Id;
-use crate::netlist::model::PartClass;
 
 /// A board, flat.
 #[derive(Debug)]
@@ -275,63 +272,6 @@ impl<'a> Expander<'a> {
         Ok(())
     }
 
-    fn value(&mut self, part: &Part, formula: Id<Formula>, env: Env) -> Result<Value, Box<Notice>> {
-        // A behavioural source rests on the running circuit: that its value is not known is no news.
-        let controlled = part.class == PartClass::Controlled;
-        let number =
-            if controlled { self.evaluator.quietly(env, formula)? } else { self.evaluator.value(env, formula)? };
-        if number.is_none() && !controlled {
-            self.remarks.add(Topic::UnknownValue, part.span, self.program.names.text(part.refdes));
-        }
-        Ok(number.map_or(Value::Unknown, |number| value::of_class(part.class, number)))
-    }
-
-    /// The range of a source whose waveform rests on parameters.
-    fn wave(&mut self, template: &Template, wave: u32, env: Env) -> Result<Value, Box<Notice>> {
-        let (waveform, line) = &template.waves[wave as usize];
-        let file = self.program.file(*line);
-        let mut failed = None;
-        let range = waveform.range(&self.program.decks[line.deck as usize].words, &mut |word| {
-            let value = self.evaluator.at(env, word.span(file));
-            value.unwrap_or_else(|notice| {
-                failed.get_or_insert(notice);
-                None
-            })
-        });
-        let (low, high) = range.unwrap_or((f64::NAN, f64::NAN));
-        failed.map_or(Ok(Value::VoltsBetween(Volts(low), Volts(high))), Err)
-    }
-
-    fn tails(
-        &mut self,
-        template: &'a Template,
-        part: &'a Part,
-        frame: Frame,
-        id: Id<Element>,
-    ) -> Result<(), Box<Notice>> {
-        let mut times = None;
-        for tail in tails(template, part) {
-            let Some(value) = self.amount(frame.env, tail.value)? else { continue };
-            if self.program.names.text(tail.key).eq_ignore_ascii_case("m") {
-                times = Some(value);
-            }
-            let key = self.names.name(self.program, tail.key);
-            self.circuit.parameters.push(Parameter { element: id, key, value });
-        }
-        if let Some(times) = times {
-            let value = &mut self.circuit.elements[id].value;
-            *value = value::parallel(*value, times);
-        }
-        Ok(())
-    }
-
-    pub(super) fn amount(&mut self, env: Env, amount: Amount) -> Result<Option<f64>, Box<Notice>> {
-        match amount {
-            Amount::Known(value) => Ok(Some(value)),
-            Amount::Formula(formula) => self.evaluator.quietly(env, formula),
-        }
-    }
-
     fn block(&mut self, name: Name, definition: Option<Id<Definition>>) -> Id<BlockType> {
         if let Some(&block) = self.blocks.get(&(name, definition)) {
             return block;
@@ -365,6 +305,10 @@ impl<'a> Expander<'a> {
         remarks.merge(&self.evaluator.remarks);
         let program = self.program;
         let mut notices = std::mem::take(&mut self.plan.problems);
+        if self.plan.problem_count > notices.len() {
+            let more = self.plan.problem_count - notices.len();
+            notices.push(Notice::general(Severity::Warning, format!("{more} more lines could not be read as a part")));
+        }
         notices.extend(remarks.notices(
             || program.definitions().map(|(_, definition)| program.names.text(definition.name)),
             || program.models.iter().map(|(_, model)| program.names.text(model.name)),

@@ -6,6 +6,7 @@
 // Lifted when the pipeline is joined.
 #![allow(dead_code)]
 
+mod amount;
 mod compile;
 mod condition;
 mod coupling;

@@ -113,11 +113,6 @@ impl Remarks {
         repeats.show(span, name);
     }
 
-    /// How many places there are for `topic`.
-    pub(super) fn count(&self, topic: Topic) -> usize {
-        self.topics.get(&topic).map_or(0, |repeats| repeats.count)
-    }
-
     /// Takes the places of `other`.
     pub(super) fn merge(&mut self, other: &Self) {
         for (&topic, from) in &other.topics {

@@ -77,8 +77,9 @@ pub(super) struct Template {
     pub between_grounds: Option<Span>,
     /// What there is to say about the lines.
     pub remarks: Remarks,
-    /// Lines that could not be read as a part, the first of them.
+    /// Lines that could not be read as a part: the first of them, and how many there are.
     pub problems: Vec<Notice>,
+    pub problem_count: usize,
     /// Those lines, while the template is made.
     pub not_read: Vec<Line>,
     /// Couplings by index into [`Template::parts`], with the words that they refer to, while the template is made.
