@@ -1,6 +1,6 @@
 //! Each scope's lines to a template: designators told apart, nets numbered, letters, models and types settled.
 
-use super::limits::{Limits, passed};
+use super::limits::passed;
 use super::model::Value;
 use super::models;
 use super::plan::PROBLEMS;
@@ -21,9 +21,9 @@ use crate::netlist::model::{PartClass, Word};
 ///
 /// # Errors
 /// A limit passed.
-pub(super) fn compile(program: &mut Program, sources: &Sources, limits: &Limits) -> Result<(), Box<Notice>> {
+pub(super) fn compile(program: &mut Program, sources: &Sources) -> Result<(), Box<Notice>> {
     let hints = program.models.ids().map(|id| models::hint(program, sources, id)).collect();
-    let mut compiler = Compiler { sources, limits, hints, pool: Pool::default() };
+    let mut compiler = Compiler { sources, hints, pool: Pool::default() };
     for scope in program.scopes.ids() {
         let template = compiler.scope(program, scope)?;
         program.templates.push(template);
@@ -34,7 +34,6 @@ pub(super) fn compile(program: &mut Program, sources: &Sources, limits: &Limits)
 /// Makes templates, one scope after the other.
 pub(super) struct Compiler<'a> {
     pub(super) sources: &'a Sources,
-    pub(super) limits: &'a Limits,
     /// What each model describes, one row a model line.
     pub(super) hints: Vec<ModelHint>,
     pub(super) pool: Pool,
@@ -138,6 +137,7 @@ impl Compiler<'_> {
             Ok(form) if form.nodes.len() <= usize::from(u16::MAX) => form,
             Ok(_) => return Err(passed("pins of one part", usize::from(u16::MAX), "", Some(span))),
             Err(problem) => {
+                template.problem_count += 1;
                 if template.problems.len() < PROBLEMS {
                     template.problems.push(problem.notice(file));
                 }
@@ -164,11 +164,12 @@ impl Compiler<'_> {
             tail_count: 0,
             value: Value::Unknown,
             formula: None,
+            wave: None,
             model: None,
             part_type: None,
             definition: None,
         };
-        self.value(program, scope, line, &form, &mut part, template)?;
+        self.value(program, scope, line, &form, &mut part, template);
         if let Some(word) = form.kind.filter(|_| part.formula.is_none() || !matches!(form.value, ValueForm::Word(_))) {
             self.kind(program, scope, file, word, &mut part, template);
         }

@@ -70,7 +70,9 @@ impl Gatherer<'_> {
         let span = header::span(file, &words, 1..words.len());
         // Inside a definition a parameter may differ from instance to instance: only global ones are asked.
         let mut evaluator = Evaluator::new(&self.program, self.sources, self.limits);
+        evaluator.steps = self.steps;
         let value = evaluator.at(Env::TOP, span)?;
+        self.steps = evaluator.steps;
         if value.is_none() {
             self.remarks.add(Topic::Undecided, statement.span, "");
         }

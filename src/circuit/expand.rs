@@ -3,21 +3,19 @@
 use hashbrown::{HashMap, HashSet};
 
 use super::limits::Limits;
-use super::model::{BlockType, Circuit, Coupling, Element, Model, Net, Parameter, Sheet, Value};
+use super::model::{BlockType, Circuit, Coupling, Element, Model, Net, Sheet};
 use super::models;
 use super::nets::{GROUND, Naming, net};
 use super::params::{Env, Evaluator};
 use super::plan::Plan;
-use super::program::{Definition, Formula, ModelLine, Program, Scope};
-use super::remarks::{Remarks, Topic};
-use super::template::{Amount, Local, Part, Shared, Tail, Template};
-use super::value;
+use super::program::{Definition, ModelLine, Program, Scope};
+use super::remarks::Remarks;
+use super::template::{Local, Part, Shared, Tail, Template};
 use crate::base::names::Name;
 use crate::base::notice::{Notice, Severity};
 use crate::base::sources::Sources;
 use crate::base::span::{FileId, Span};
 use crate::base::table::Id;
-use crate::netlist::model::PartClass;
 
 /// A board, flat.
 #[derive(Debug)]
@@ -49,6 +47,34 @@ pub(super) fn expand(
     naming: Naming,
     limits: &Limits,
 ) -> Result<Expanded, Box<Notice>> {
+    let mut expander = expanded(program, sources, board, closed, naming, limits)?;
+    let notices = expander.notices();
+    Ok(Expanded { circuit: expander.circuit(), notices })
+}
+
+/// The same without a word about it.
+///
+/// # Errors
+/// As [`expand`].
+pub(super) fn silently(
+    program: &Program,
+    sources: &Sources,
+    board: Board,
+    closed: &HashSet<Id<Definition>>,
+    naming: Naming,
+    limits: &Limits,
+) -> Result<Circuit, Box<Notice>> {
+    Ok(expanded(program, sources, board, closed, naming, limits)?.circuit())
+}
+
+fn expanded<'a>(
+    program: &'a Program,
+    sources: &'a Sources,
+    board: Board,
+    closed: &'a HashSet<Id<Definition>>,
+    naming: Naming,
+    limits: &'a Limits,
+) -> Result<Expander<'a>, Box<Notice>> {
     let scope = match board {
         Board::Top => Id::new(0),
         Board::Definition(definition) => program.definitions[definition].scope,
@@ -76,7 +102,7 @@ pub(super) fn expand(
     };
     expander.reserve(row.elements);
     expander.board(board, scope)?;
-    Ok(expander.finish())
+    Ok(expander)
 }
 
 /// The circuit under way.
@@ -215,9 +241,10 @@ impl<'a> Expander<'a> {
                 }
             }
         }
-        let value = match part.formula {
-            None => part.value,
-            Some(formula) => self.value(part, formula, frame.env)?,
+        let value = match (part.formula, part.wave) {
+            (Some(formula), _) => self.value(part, formula, frame.env)?,
+            (None, Some(wave)) => self.wave(template, wave, frame.env)?,
+            (None, None) => part.value,
         };
         let model = match part.model {
             Some(line) => Some(self.model(line)?),
@@ -243,47 +270,6 @@ impl<'a> Expander<'a> {
             self.tails(template, part, frame, id)?;
         }
         Ok(())
-    }
-
-    fn value(&mut self, part: &Part, formula: Id<Formula>, env: Env) -> Result<Value, Box<Notice>> {
-        // A behavioural source rests on the running circuit: that its value is not known is no news.
-        let controlled = part.class == PartClass::Controlled;
-        let number =
-            if controlled { self.evaluator.quietly(env, formula)? } else { self.evaluator.value(env, formula)? };
-        if number.is_none() && !controlled {
-            self.remarks.add(Topic::UnknownValue, part.span, self.program.names.text(part.refdes));
-        }
-        Ok(number.map_or(Value::Unknown, |number| value::of_class(part.class, number)))
-    }
-
-    fn tails(
-        &mut self,
-        template: &'a Template,
-        part: &'a Part,
-        frame: Frame,
-        id: Id<Element>,
-    ) -> Result<(), Box<Notice>> {
-        let mut times = None;
-        for tail in tails(template, part) {
-            let Some(value) = self.amount(frame.env, tail.value)? else { continue };
-            if self.program.names.text(tail.key).eq_ignore_ascii_case("m") {
-                times = Some(value);
-            }
-            let key = self.names.name(self.program, tail.key);
-            self.circuit.parameters.push(Parameter { element: id, key, value });
-        }
-        if let Some(times) = times {
-            let value = &mut self.circuit.elements[id].value;
-            *value = value::parallel(*value, times);
-        }
-        Ok(())
-    }
-
-    pub(super) fn amount(&mut self, env: Env, amount: Amount) -> Result<Option<f64>, Box<Notice>> {
-        match amount {
-            Amount::Known(value) => Ok(Some(value)),
-            Amount::Formula(formula) => self.evaluator.quietly(env, formula),
-        }
     }
 
     fn block(&mut self, name: Name, definition: Option<Id<Definition>>) -> Id<BlockType> {
@@ -312,17 +298,21 @@ impl<'a> Expander<'a> {
         Ok(id)
     }
 
-    fn finish(mut self) -> Expanded {
-        self.circuit.unread_lines = self.plan.unread_lines + self.program.missing_files;
+    /// What was noticed.
+    fn notices(&mut self) -> Vec<Notice> {
         let mut remarks = std::mem::take(&mut self.plan.remarks);
         remarks.merge(&self.remarks);
         remarks.merge(&self.evaluator.remarks);
         let program = self.program;
-        let mut notices = remarks.notices(
+        let mut notices = std::mem::take(&mut self.plan.problems);
+        if self.plan.problem_count > notices.len() {
+            let more = self.plan.problem_count - notices.len();
+            notices.push(Notice::general(Severity::Warning, format!("{more} more lines could not be read as a part")));
+        }
+        notices.extend(remarks.notices(
             || program.definitions().map(|(_, definition)| program.names.text(definition.name)),
             || program.models.iter().map(|(_, model)| program.names.text(model.name)),
-        );
-        notices.splice(0..0, std::mem::take(&mut self.plan.problems));
+        ));
         if let Some(span) = self.gnd_span {
             notices.push(match self.plan.between_grounds {
                 None => Notice::at(Severity::Note, span, "GND is taken as node 0"),
@@ -330,10 +320,15 @@ impl<'a> Expander<'a> {
                     .also(between, "this part stands between the two"),
             });
         }
+        notices
+    }
+
+    fn circuit(mut self) -> Circuit {
+        self.circuit.unread_lines = self.plan.unread_lines + self.program.missing_files;
         self.circuit.names = match self.names {
             Naming::All(names) | Naming::Used(names, _) => names,
         };
-        Expanded { circuit: self.circuit, notices }
+        self.circuit
     }
 }
 

@@ -45,6 +45,8 @@ pub(super) struct Gatherer<'a> {
     pub(super) open: Vec<Open>,
     pub(super) bytes: usize,
     pub(super) includes: usize,
+    /// Steps of evaluating conditions.
+    pub(super) steps: usize,
     pub(super) remarks: Remarks,
 }
 
@@ -74,6 +76,7 @@ impl<'a> Gatherer<'a> {
             open: Vec::new(),
             bytes: 0,
             includes: 0,
+            steps: 0,
             remarks: Remarks::default(),
         }
     }
@@ -81,9 +84,12 @@ impl<'a> Gatherer<'a> {
     /// Sorts all lines.
     ///
     /// # Errors
-    /// A limit passed, or a file that includes itself.
+    /// A root that is no netlist, a limit passed, or a file that includes itself.
     pub(super) fn run(mut self, roots: &[Root]) -> Result<Program, Box<Notice>> {
         for root in roots {
+            if let Some(refusal) = netlist::refuse::refuse(root.file, self.sources.text(root.file)) {
+                return Err(Box::new(refusal));
+            }
             let deck = netlist::read(root.file, self.sources.text(root.file));
             self.program.notices.extend(deck.notices.iter().cloned());
             self.program.decks.push(deck);

@@ -34,6 +34,9 @@ impl Limits {
         expression_steps: 100_000_000,
     };
 
+    /// Elements of all definitions that are flattened alone, together.
+    pub(crate) const FLATTENED: usize = 4_000_000;
+
     /// The limits of one definition that is flattened alone to look at its structure: the largest sink arrays
     /// have a few hundred elements.
     pub(crate) const DEFINITION: Self =

@@ -6,6 +6,7 @@
 // Lifted when the pipeline is joined.
 #![allow(dead_code)]
 
+mod amount;
 mod compile;
 mod condition;
 mod coupling;
@@ -53,7 +54,7 @@ pub(crate) type Closed = HashSet<Id<Definition>>;
 /// the folders `allowed`.
 ///
 /// # Errors
-/// A limit passed, or a file that includes itself.
+/// A root that is no netlist, a limit passed, or a file that includes itself.
 pub(crate) fn load(
     sources: &mut Sources,
     roots: &[Root],
@@ -61,7 +62,7 @@ pub(crate) fn load(
     limits: &Limits,
 ) -> Result<Program, Box<Notice>> {
     let mut program = gather::Gatherer::new(sources, roots, allowed, limits).run(roots)?;
-    compile::compile(&mut program, sources, limits)?;
+    compile::compile(&mut program, sources)?;
     Ok(program)
 }
 
@@ -105,16 +106,22 @@ pub(crate) fn expand(
 }
 
 /// Makes a small flat circuit of one definition alone, its ports marked, for a look at its structure. None where it
-/// is larger than [`Limits::DEFINITION`] or contains itself.
+/// is larger than [`Limits::DEFINITION`], contains itself, or would take more than the `left` elements of the budget
+/// for all definitions, which begins with [`Limits::FLATTENED`].
 pub(crate) fn flatten(
     program: &Program,
     sources: &Sources,
     definition: Id<Definition>,
     closed: &Closed,
+    left: &mut usize,
 ) -> Option<Circuit> {
     let naming = nets::Naming::Used(Names::default(), HashMap::new());
     let board = Board::Definition(definition);
-    expand::expand(program, sources, board, closed, naming, &Limits::DEFINITION).ok().map(|flat| flat.circuit)
+    let limits = Limits { elements: Limits::DEFINITION.elements.min(*left), ..Limits::DEFINITION };
+    let flat = expand::silently(program, sources, board, closed, naming, &limits).ok();
+    // One that is too large was counted up to the limit.
+    *left = left.saturating_sub(flat.as_ref().map_or(limits.elements, |flat| flat.elements.len()).max(1));
+    flat
 }
 
 #[cfg(test)]

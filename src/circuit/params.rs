@@ -34,7 +34,8 @@ pub(super) struct Evaluator<'a> {
     limits: &'a Limits,
     levels: Vec<Level>,
     parsed: HashMap<Span, Result<Rc<Expression>, bool>>,
-    steps: usize,
+    /// Steps so far.
+    pub steps: usize,
     depth: usize,
     /// A limit that was passed inside an expression.
     failed: Option<Box<Notice>>,

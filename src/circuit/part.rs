@@ -2,13 +2,11 @@
 
 use super::compile::Compiler;
 use super::model::Value;
-use super::params::{Env, Evaluator};
 use super::program::{Formula, Line, Program, Scope, text};
 use super::remarks::Topic;
 use super::template::{Amount, Part, Shared, Tail, Template};
 use super::value;
 use crate::base::names::Name;
-use crate::base::notice::Notice;
 use crate::base::quantity::{Ohms, Volts};
 use crate::base::span::{FileId, Span};
 use crate::base::table::Id;
@@ -26,7 +24,7 @@ impl Compiler<'_> {
         form: &ElementForm<'_>,
         part: &mut Part,
         template: &mut Template,
-    ) -> Result<(), Box<Notice>> {
+    ) {
         let file = program.file(line);
         let place = |word: Word| Span { file, start: word.start, len: word.len };
         match &form.value {
@@ -44,28 +42,19 @@ impl Compiler<'_> {
                 }
             }
             ValueForm::Moving(waveform) if part.class == PartClass::VoltageSource => {
-                let sources = self.sources;
-                let mut evaluator = Evaluator::new(program, sources, self.limits);
-                let mut failed = None;
-                let range = waveform.range(&program.decks[line.deck as usize].words, &mut |word| {
-                    let plain = number::parse(text(sources, file, word)).map(|number| number.value);
-                    // Inside a definition a name may mean something else in each instance.
-                    let known = plain.map_or_else(|| scope.index() == 0, |_| false);
-                    let worked = if known { evaluator.at(Env::TOP, place(word)) } else { Ok(plain) };
-                    worked.unwrap_or_else(|notice| {
-                        failed = Some(notice);
-                        None
-                    })
-                });
-                if let Some(notice) = failed {
-                    return Err(notice);
+                let words = &program.decks[line.deck as usize].words;
+                let number = |word: Word| number::parse(text(self.sources, file, word)).map(|number| number.value);
+                match waveform.range(words, &mut |word| number(word)) {
+                    Some((low, high)) => part.value = Value::VoltsBetween(Volts(low), Volts(high)),
+                    None => {
+                        template.waits = true;
+                        part.wave = Some(template.waves.len() as u32);
+                        template.waves.push((waveform.clone(), line));
+                    }
                 }
-                let (low, high) = range.unwrap_or((f64::NAN, f64::NAN));
-                part.value = Value::VoltsBetween(Volts(low), Volts(high));
             }
             ValueForm::Moving(_) => {}
         }
-        Ok(())
     }
 
     fn number(&self, number: Number, part: &Part, template: &mut Template) -> Value {

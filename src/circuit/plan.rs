@@ -28,6 +28,8 @@ pub(super) struct Plan {
     pub unread_lines: usize,
     /// The first lines that could not be read as a part.
     pub problems: Vec<Notice>,
+    /// How many there are.
+    pub problem_count: usize,
     /// The first element between node `0` and `gnd`.
     pub between_grounds: Option<Span>,
 }
@@ -71,6 +73,7 @@ impl Plan {
         let template: &Template = &program.templates[Id::new(scope.index())];
         self.remarks.merge(&template.remarks);
         self.unread_lines += template.unread_lines;
+        self.problem_count += template.problem_count;
         let room = PROBLEMS.saturating_sub(self.problems.len());
         self.problems.extend(template.problems.iter().take(room).cloned());
         self.between_grounds = self.between_grounds.or(template.between_grounds);

@@ -81,8 +81,6 @@ pub(crate) struct Definition {
     pub ports: Vec<Name>,
     /// The global nets that the optional ports are joined to when an instance leaves them out.
     pub optional: Vec<Name>,
-    /// Default parameters.
-    pub defaults: Vec<(Name, Id<Formula>)>,
     /// The `.subckt` line.
     pub span: Span,
     /// Its body.

@@ -57,9 +57,9 @@ impl Topic {
             Self::OtherEnds => (Note, ".ends with another name than its .subckt closes the innermost one: {}"),
             Self::SectionNotAsked => (Note, ".lib sections that no line asks for are left out: {}"),
             Self::Undecided => {
-                (Warning, "conditions that cannot be decided: the parts under .if and .else are left out{}")
+                (Warning, "conditions that cannot be decided: the parts under .if and .else are left out: {}")
             }
-            Self::OpenCondition => (Warning, ".if without .endif: taken to end with the file{}"),
+            Self::OpenCondition => (Warning, ".if without .endif: taken to end with the file: {}"),
             Self::DuplicatePorts => (Note, "port names that stand twice in one .subckt are one net inside it: {}"),
             Self::GroundPort => (Note, "a port named 0 is global ground all the same: {}"),
             Self::NoPorts => (Note, ".subckt without ports: {}"),
@@ -110,14 +110,7 @@ impl Remarks {
     pub(super) fn add(&mut self, topic: Topic, span: Span, name: &str) {
         let repeats = self.topics.entry(topic).or_default();
         repeats.count += 1;
-        if repeats.places.len() < SHOWN {
-            repeats.places.push((span, name.to_owned()));
-        }
-    }
-
-    /// How many places there are for `topic`.
-    pub(super) fn count(&self, topic: Topic) -> usize {
-        self.topics.get(&topic).map_or(0, |repeats| repeats.count)
+        repeats.show(span, name);
     }
 
     /// Takes the places of `other`.
@@ -125,8 +118,9 @@ impl Remarks {
         for (&topic, from) in &other.topics {
             let to = self.topics.entry(topic).or_default();
             to.count += from.count;
-            let room = SHOWN.saturating_sub(to.places.len());
-            to.places.extend(from.places.iter().take(room).cloned());
+            for (span, name) in &from.places {
+                to.show(*span, name);
+            }
         }
     }
 
@@ -163,21 +157,25 @@ impl Remarks {
 }
 
 impl Repeats {
+    /// Keeps a place to show, one a name.
+    fn show(&mut self, span: Span, name: &str) {
+        let known = !name.is_empty() && self.places.iter().any(|(_, known)| known == name);
+        if self.places.len() < SHOWN && !known {
+            self.places.push((span, name.to_owned()));
+        }
+    }
+
     fn names(&self) -> String {
-        let mut names: Vec<&str> = Vec::new();
-        for (_, name) in &self.places {
-            if !name.is_empty() && !names.contains(&name.as_str()) {
-                names.push(name);
-            }
+        let names: Vec<&str> =
+            self.places.iter().map(|(_, name)| name.as_str()).filter(|name| !name.is_empty()).collect();
+        let named = names.join(", ");
+        match (named.is_empty(), self.count > self.places.len()) {
+            (true, _) if self.count == 1 => "here".to_owned(),
+            (true, _) => format!("{} places", self.count),
+            (false, true) if self.places.len() < SHOWN => format!("{named} ({} places)", self.count),
+            (false, true) => format!("{named}, … ({} places)", self.count),
+            (false, false) => named,
         }
-        let mut named = names.join(", ");
-        if named.is_empty() && self.count > 1 {
-            return format!("{} places", self.count);
-        }
-        if self.count > self.places.len() {
-            named.push_str(&format!(" and {} more", self.count - self.places.len()));
-        }
-        named
     }
 }
 
@@ -197,8 +195,8 @@ mod tests {
         all.merge(&remarks);
         let notices = all.notices(|| ["ULN2003A"].into_iter(), std::iter::empty);
         assert_eq!(notices.len(), 1);
-        assert!(notices[0].message.ends_with("ULN20003A, CONN and 6 more"), "{}", notices[0].message);
-        assert_eq!(notices[0].also.len(), 3);
+        assert!(notices[0].message.ends_with("ULN20003A, CONN (10 places)"), "{}", notices[0].message);
+        assert_eq!(notices[0].also.len(), 1);
         assert_eq!(notices[0].hint.as_deref(), Some("did you mean ULN2003A instead of ULN20003A?"));
     }
 }

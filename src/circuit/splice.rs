@@ -107,6 +107,13 @@ impl Gatherer<'_> {
         self.program.notices.extend(decoded.notice);
         let text = decoded.text;
         let file = self.sources.add(shown, text);
+        if let Some(refusal) = netlist::refuse::refuse(file, self.sources.text(file)) {
+            // The board can do without it.
+            let notice = Notice { severity: Severity::Warning, ..refusal };
+            self.program.notices.push(notice.also(span, "included here"));
+            self.program.missing_files += 1;
+            return Ok(None);
+        }
         let deck = netlist::read_included(file, self.sources.text(file));
         self.program.notices.extend(deck.notices.iter().cloned());
         self.program.decks.push(deck);

@@ -5,7 +5,7 @@ use hashbrown::HashSet;
 use super::gather::Gatherer;
 use super::header;
 use super::limits::passed;
-use super::program::{Definition, Formula, Line, Scope, text};
+use super::program::{Definition, Line, Scope, text};
 use super::remarks::Topic;
 use crate::base::names::Name;
 use crate::base::notice::{Notice, Severity};
@@ -60,25 +60,16 @@ impl Gatherer<'_> {
         if ports.len() > MOST_PORTS {
             return Err(passed("ports of a subcircuit", MOST_PORTS, "", Some(statement.span)));
         }
-        let defaults: Vec<(Name, Id<Formula>)> =
-            defaults.into_iter().map(|(key, span)| (key, self.formula(span))).collect();
         let outer = self.scope();
         let scope = self.program.scopes.push(Scope::new(outer, Some(Id::new(self.program.definitions.len()))));
-        for &(key, formula) in &defaults {
+        for (key, span) in defaults {
+            let formula = self.formula(span);
             self.program.parameters.insert((scope, key), formula);
         }
         let span = statement.span;
         let (hidden, odd_ports) = (false, Vec::new());
-        let definition = self.program.definitions.push(Definition {
-            name,
-            ports,
-            optional,
-            defaults,
-            span,
-            scope,
-            hidden,
-            odd_ports,
-        });
+        let definition =
+            self.program.definitions.push(Definition { name, ports, optional, span, scope, hidden, odd_ports });
         self.define(outer, definition);
         let length = self.program.scopes[outer].body.len();
         if let Some(open) = self.open.last_mut() {

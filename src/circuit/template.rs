@@ -16,6 +16,7 @@ use crate::base::notice::Notice;
 use crate::base::span::Span;
 use crate::base::table::Id;
 use crate::netlist::model::{PartClass, Reading};
+use crate::netlist::source::Waveform;
 
 /// A net as a scope numbers it: one of its own, or one that it shares with others.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -64,6 +65,8 @@ pub(super) struct Template {
     pub pins: Vec<Local>,
     /// The `key=value` tails of all parts.
     pub tails: Vec<Tail>,
+    /// Waveforms that wait for parameters, each with its line.
+    pub waves: Vec<(Waveform, Line)>,
     /// Coupled inductors.
     pub couplings: Vec<Pair>,
     /// Nets that a line which was not read names.
@@ -74,8 +77,9 @@ pub(super) struct Template {
     pub between_grounds: Option<Span>,
     /// What there is to say about the lines.
     pub remarks: Remarks,
-    /// Lines that could not be read as a part, the first of them.
+    /// Lines that could not be read as a part: the first of them, and how many there are.
     pub problems: Vec<Notice>,
+    pub problem_count: usize,
     /// Those lines, while the template is made.
     pub not_read: Vec<Line>,
     /// Couplings by index into [`Template::parts`], with the words that they refer to, while the template is made.
@@ -100,6 +104,8 @@ pub(super) struct Part {
     pub value: Value,
     /// Otherwise what works it out.
     pub formula: Option<Id<Formula>>,
+    /// Or the waveform whose range it is, by index into [`Template::waves`].
+    pub wave: Option<u32>,
     pub model: Option<Id<ModelLine>>,
     pub part_type: Option<Name>,
     /// The definition that it instantiates; its node count fits.

@@ -2,6 +2,7 @@
 
 use super::{board_names, check, read, read_closed};
 use crate::circuit::model::Value;
+use crate::circuit::{Closed, Limits, Root, flatten, load};
 
 #[test]
 fn an_instance_is_replaced_by_the_body_of_its_definition() {
@@ -197,6 +198,23 @@ fn parts_in_parallel_parasitics_and_sources_keep_what_they_say() {
 }
 
 #[test]
+fn a_waveform_takes_the_parameters_of_its_instance() {
+    check(
+        ".param top=9\nX1 a S\nX2 a S hi=12\n.subckt S x hi=5\nV1 x 0 PULSE(0 {hi} 0 1n 1n 1m 2m)\n.ends\nV2 b 0 SIN(0 top 50)",
+        &["X1/V1 a 0 = 0 V to 5 V", "X2/V1 a 0 = 0 V to 12 V", "V2 b 0 = -9 V to 9 V"],
+    );
+}
+
+#[test]
+fn an_encrypted_inside_stays_closed() {
+    let read = check(
+        "X1 a b S\n.subckt S p q\n.prot\n0123456789abcdef\n.unprot\nR1 p q 1k\n.ends\nR1 a b 1k",
+        &["X1 a b : S (p q)", "R1 a b = 1 kohm"],
+    );
+    read.says("encrypted");
+}
+
+#[test]
 fn couplings_find_their_inductors() {
     let read = check("K1 L1 L2 0.98\nL1 a 0 1m\nL2 b 0 4m", &["K1 = 0.98", "L1 a 0 = 1 mH", "L2 b 0 = 4 mH"]);
     let coupling = &read.circuit.couplings[0];
@@ -240,6 +258,26 @@ fn a_file_of_definitions_holds_boards() {
     assert_eq!(read.lines(), ["X1/R1 p 0 = 1 kohm"]);
     let port = |at: usize| read.circuit.nets.rows()[at].port;
     assert!(port(0) && port(1));
+}
+
+#[test]
+fn a_definition_is_flattened_alone_within_a_budget() {
+    let mut sources = crate::base::sources::Sources::default();
+    let text =
+        "A board\nX1 a b S\n.subckt S p q\nX1 p q T\nR1 p 0 1k\n.ends\n.subckt T p q\nR1 p m 1k\nR2 m q 1k\n.ends\n";
+    let file = sources.add("board.cir".to_owned(), text.to_owned());
+    let program = load(&mut sources, &[Root { file, folder: None }], &[], &Limits::BOARD).unwrap();
+    let (id, _) = program.definitions().next().unwrap();
+    let mut left = 10;
+    let flat = flatten(&program, &sources, id, &Closed::new(), &mut left).unwrap();
+    let names: Vec<String> = flat.elements.ids().map(|element| flat.refdes(element)).collect();
+    assert_eq!(names, ["X1/R1", "X1/R2", "R1"]);
+    let ports: Vec<String> = flat.nets.iter().filter(|(_, net)| net.port).map(|(id, _)| flat.net_name(id)).collect();
+    assert_eq!(ports, ["p", "q"]);
+    assert_eq!(left, 7);
+    left = 2;
+    assert!(flatten(&program, &sources, id, &Closed::new(), &mut left).is_none());
+    assert_eq!(left, 0);
 }
 
 #[test]

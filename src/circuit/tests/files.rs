@@ -151,7 +151,7 @@ fn each_limit_is_named_when_it_is_passed() {
     );
     passes(
         &[],
-        "A\nR1 a 0 {1+1+1+1}\nR2 a 0 {b+1}\n",
+        "A\n.param b=1\nR1 a 0 {1+1+1+1}\nR2 a 0 {b+1}\n",
         &Limits { expression_steps: 2, ..Limits::BOARD },
         "expression steps",
     );
