@@ -19,7 +19,7 @@ use crate::base::span::{FileId, Span};
 use crate::base::table::Id;
 use crate::netlist;
 use crate::netlist::model::{Statement, StatementForm, Word};
-use crate::netlist::words::assignments;
+use crate::netlist::assignment::assignments;
 
 /// A file that the user named: one board, or one sheet of it.
 #[derive(Clone, Debug)]

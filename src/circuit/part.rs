@@ -13,7 +13,7 @@ use crate::base::table::Id;
 use crate::netlist::element::{ElementForm, ValueForm};
 use crate::netlist::model::{PartClass, Reading, Word, WordForm};
 use crate::netlist::number::{self, Doubt, Number, Spelling};
-use crate::netlist::words::assignments;
+use crate::netlist::assignment::assignments;
 
 impl Compiler<'_> {
     pub(super) fn value(
