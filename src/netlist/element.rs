@@ -65,7 +65,7 @@ pub(crate) struct ElementForm<'t> {
     pub value: ValueForm,
     /// The model or subcircuit that it names, or a type word such as `ULN2003A` or `RES_0805`.
     pub kind: Option<Word>,
-    /// The words among which its `key=value` tails stand: see [`assignments`](super::words::assignments).
+    /// The words among which its `key=value` tails stand: see [`assignments`](super::assignment::assignments).
     pub tail: Range<u32>,
     /// `false` where a word says so (`DNP`, `NC`, `not fitted`).
     pub fitted: bool,
@@ -178,7 +178,9 @@ impl<'t, 'w> ElementLine<'t, 'w> {
     fn drop_last_words(&mut self) {
         while let Some(last) = self.end.checked_sub(1).filter(|&last| last > 1) {
             let word = self.word_text(last);
-            let sentence = (2..=3).find(|&count| {
+            // Every sentence ends in a word of letters alone.
+            let letters = word.len() >= 3 && word.bytes().all(|byte| byte.is_ascii_alphabetic());
+            let sentence = (2..=3).filter(|_| letters).find(|&count| {
                 let from = self.end.saturating_sub(count);
                 from > 1 && fitted::sentence(self.text, self.words.get(from..self.end).unwrap_or(&[])) == count
             });
@@ -210,7 +212,11 @@ impl<'t, 'w> ElementLine<'t, 'w> {
             word.bytes().all(|byte| byte.is_ascii_alphabetic() || byte == b'-')
         };
         let long = self.letter != b'X' && self.words.len() >= 4 && self.tail == self.words.len();
-        if long && letters(&self.words[0]) && self.words.iter().all(letters) && self.words.iter().any(little) {
+        if long
+            && self.words.first().is_some_and(letters)
+            && self.words.iter().all(letters)
+            && self.words.iter().any(little)
+        {
             return Err(self.problem(0, "this line reads like a sentence, not like a part"));
         }
         Ok(())
@@ -251,7 +257,7 @@ impl<'t, 'w> ElementLine<'t, 'w> {
         if self.tail >= self.words.len() {
             return None;
         }
-        super::words::assignments(self.text, self.tail())
+        super::assignment::assignments(self.text, self.tail())
             .find(|pair| pair.key.text(self.text).eq_ignore_ascii_case(key))
             .map(|pair| pair.value)
     }
@@ -319,3 +325,6 @@ impl<'t, 'w> ElementLine<'t, 'w> {
         Problem { word, message: message.to_owned() }
     }
 }
+
+#[cfg(test)]
+pub(in crate::netlist) mod tests;

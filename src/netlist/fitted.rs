@@ -1,7 +1,7 @@
 //! Words that say a part is drawn but not there.
 
+use super::assignment::assignments;
 use super::model::{Word, WordForm};
-use super::words::assignments;
 
 /// Words that mean nothing else.
 const UNFITTED: [&str; 13] = [
@@ -28,6 +28,10 @@ const SENTENCES: [&str; 5] = ["not fitted", "do not fit", "do not populate", "no
 
 /// Whether `word` says that the part is not there.
 pub(super) fn says_unfitted(word: &str) -> bool {
+    // Asked of every part's last word: most are told by their letters.
+    if word.bytes().filter(u8::is_ascii_alphabetic).take(3).count() < 3 {
+        return false;
+    }
     let is = |part: &str| UNFITTED.iter().any(|unfitted| unfitted.eq_ignore_ascii_case(part));
     is(word)
         || SENTENCES.iter().any(|sentence| sentence.eq_ignore_ascii_case(word))

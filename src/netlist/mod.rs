@@ -7,6 +7,7 @@
 // Lifted when the pipeline is joined.
 #![allow(dead_code)]
 
+pub(crate) mod assignment;
 mod class;
 pub(crate) mod decode;
 pub(crate) mod designator;
@@ -25,7 +26,7 @@ mod remarks;
 pub(crate) mod source;
 mod spice;
 mod title;
-pub(crate) mod words;
+mod words;
 
 use crate::base::span::FileId;
 use model::Deck;

@@ -56,9 +56,10 @@ pub(super) fn spice(text: &str) -> IResult<&str, Number> {
     let (rest, mantissa) = mantissa(text)?;
     let (after, scale) = opt(suffix).parse(rest)?;
     let letter = &rest[..rest.len() - after.len()];
-    let bare = |unit: &str| after.is_empty() || unit.eq_ignore_ascii_case(after);
+    // Nothing, or the unit of resistance; the sign for it is U+03A9 or U+2126.
+    const UNITS: [&str; 6] = ["", "ohm", "ohms", "r", "\u{3a9}", "\u{2126}"];
     let doubt = match letter {
-        "M" if bare("ohm") || bare("ohms") || after == "Ω" || after == "Ω" => Some(Doubt::MilliOrMega),
+        "M" if UNITS.iter().any(|unit| unit.eq_ignore_ascii_case(after)) => Some(Doubt::MilliOrMega),
         "F" | "f" if after.is_empty() => Some(Doubt::FemtoOrUnit),
         _ => None,
     };
@@ -85,21 +86,22 @@ fn mantissa(text: &str) -> IResult<&str, &str> {
 
 /// A SPICE scale suffix. The micro sign stands in three spellings: U+00B5, U+03BC and `u`.
 fn suffix(text: &str) -> IResult<&str, Scale> {
+    let letter = |letter: char| {
+        Scale::Ten(match letter.to_ascii_lowercase() {
+            't' => 12,
+            'g' => 9,
+            'k' => 3,
+            'n' => -9,
+            'p' => -12,
+            'f' => -15,
+            _ => -6,
+        })
+    };
     alt((
+        map(one_of("kKnNpPuUµμgGtTfF"), letter),
         value(Scale::Ten(6), tag_no_case("meg")),
         value(Scale::Mil, tag_no_case("mil")),
-        value(Scale::Ten(9), tag_no_case("g")),
-        value(Scale::Ten(12), tag_no_case("t")),
-        map(one_of("kKmMuUµμnNpPfF"), |letter| {
-            Scale::Ten(match letter.to_ascii_lowercase() {
-                'k' => 3,
-                'm' => -3,
-                'n' => -9,
-                'p' => -12,
-                'f' => -15,
-                _ => -6,
-            })
-        }),
+        value(Scale::Ten(-3), tag_no_case("m")),
     ))
     .parse(text)
 }
@@ -118,7 +120,7 @@ fn scaled(digits: &str, scale: Scale) -> f64 {
 
 /// Letters that may follow a number and its suffix: a unit, which SPICE ignores.
 fn is_unit(rest: &str) -> bool {
-    rest.chars().all(|c| c.is_alphabetic() || matches!(c, 'Ω' | '°'))
+    rest.chars().all(|c| c.is_alphabetic() || matches!(c, '\u{2126}' | '°'))
 }
 
 /// The notation of IEC 60062 in the middle of digits: `4k7`, `4R7`, `3V3`.

@@ -65,35 +65,41 @@ fn binary(text: &str) -> Option<usize> {
         return Some(0);
     }
     // One stray control character is a slip of an exporter.
-    if count * 50 > head.len() { head.iter().position(|byte| odd(&byte)) } else { None }
+    if count * 50 > head.len() { head.iter().position(odd) } else { None }
 }
 
 /// What the first line that is neither blank nor comment gives away; `rest` goes on after it.
 fn by_first_line(line: &str, rest: &str) -> Option<&'static str> {
     let word = line.split(|c: char| c.is_whitespace() || c == '(').next().unwrap_or("").to_ascii_lowercase();
     let second = line.split_ascii_whitespace().nth(1).unwrap_or("");
+    let next = rest.lines().skip(1).find(|line| !line.trim().is_empty()).unwrap_or("");
     let braced = || rest.bytes().take(400).find(|byte| matches!(byte, b'{' | b';' | b'.')) == Some(b'{');
     match word.as_str() {
         "library" if line.contains('(') && braced() => Some("a timing library"),
         "eeschema-library" | "eeschema-doclib" => Some("a symbol library"),
         "eeschema" => Some("a schematic drawing"),
         "version" if second.parse::<f64>().is_ok() => {
-            let next = rest.lines().nth(1).unwrap_or("").to_ascii_lowercase();
+            let next = next.to_ascii_lowercase();
             (next.starts_with("sheet") || next.starts_with("symboltype")).then_some("a schematic drawing or symbol")
         }
         "module" if line.contains(['(', ';']) => Some("a hardware description"),
         "simulator" if line.contains("lang") => Some("a netlist in another simulator's language"),
         _ if line.starts_with("<?xml") || line.starts_with("<!") => Some("XML or HTML"),
-        _ if line.starts_with('<') && line.contains('>') => Some("XML or HTML"),
-        _ if line.starts_with('{') => Some("JSON"),
-        _ if line.starts_with('[') => {
-            let inside = line.get(1..).unwrap_or("").trim_start();
-            let more = inside.starts_with(['{', '[', '"']) || (inside.is_empty() && line.len() == 1);
-            Some(if more { "JSON" } else { "a settings file" })
+        _ if line.starts_with('<') && closes_a_tag(rest) => Some("XML or HTML"),
+        _ if line.starts_with('{') && line.trim_start_matches(['{', '[']).trim_start().starts_with('"') => Some("JSON"),
+        _ if matches!(line, "{" | "[") => Some("JSON"),
+        _ if line.starts_with('[') && line.trim_start_matches(['{', '[']).trim_start().starts_with(['{', '"']) => {
+            Some("JSON")
         }
+        _ if line.starts_with('[') && line.ends_with(']') && next.contains('=') => Some("a settings file"),
         _ if line.starts_with('(') && starts_list(line) => Some("nested lists in parentheses (s-expressions)"),
         _ => None,
     }
+}
+
+/// Whether a tag ends near the start of `text`.
+fn closes_a_tag(text: &str) -> bool {
+    text.as_bytes().get(..2_000).unwrap_or(text.as_bytes()).windows(2).any(|two| two == b"</" || two == b"/>")
 }
 
 /// `(word`, with only opening parentheses and words after it: a list, not a title in parentheses.
@@ -211,6 +217,7 @@ mod tests {
         check("<?xml version=\"1.0\"?>\n<a/>", Some("XML or HTML"));
         check("{ \"nets\": [] }", Some("JSON"));
         check("[\n {\"a\":1}\n]", Some("JSON"));
+        check("[board]\nname=x\n", Some("a settings file"));
         check("EESchema-LIBRARY Version 2.4\n#\nDEF X", Some("a symbol library"));
         check("Version 4\nSHEET 1 880 680\nWIRE 1 2 3 4", Some("a schematic drawing or symbol"));
         check("1,2\n3,4\n5,6\n7,8\n", Some("a table of numbers"));
@@ -229,12 +236,12 @@ mod tests {
             "title\n.end\n",
             "R1 a 0 1k",
             "[draft] board\nU1 a b 2003A\nK1 a b RELAY\n",
+            "{draft} board\nR1 a 0 1k\n",
+            "<board> of mine\nR1 a 0 1k\n",
             "Library of parts\n.subckt a b\n.ends\n",
             "x\nsome words here\nmore words\nR1 1 2 3\nV1 1 0 5\n",
         ] {
-            if !text.starts_with('[') {
-                check(text, None);
-            }
+            check(text, None);
         }
     }
 }

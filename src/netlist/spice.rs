@@ -95,18 +95,16 @@ fn passive<'t>(line: &ElementLine<'t, '_>, class: PartClass, hint: ModelHint) ->
         form.kind = Some(word);
     }
     // Ratings and tolerances (`25V`, `5%`) may follow a value.
-    let rating = |at: &usize| {
-        let text = line.positional_text(*at);
-        line.value(*at).is_some() || text.ends_with('%') || text.ends_with(['W', 'w', 'V', 'v']) || text.is_empty()
+    let rating = |at: usize| {
+        let text = line.positional_text(at);
+        line.value(at).is_some() || text.ends_with('%') || text.ends_with(['W', 'w', 'V', 'v']) || text.is_empty()
     };
-    let mut rest = next..line.end;
-    let extra = rest.find(|at| !rating(at) && !comment_model(*at));
-    if let Some(at) = extra.filter(|&at| fitted::value_says_unfitted(line.positional_text(at))) {
-        form.fitted = false;
-        form.extra = rest.find(|at| !rating(at)).and_then(|at| line.positional(at));
-        let _ = at;
-    } else {
-        form.extra = extra.and_then(|at| line.positional(at));
+    for at in next..line.end {
+        if fitted::value_says_unfitted(line.positional_text(at)) {
+            form.fitted = false;
+        } else if form.extra.is_none() && !rating(at) && !comment_model(at) {
+            form.extra = line.positional(at);
+        }
     }
     Ok(Some(form))
 }
