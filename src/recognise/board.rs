@@ -3,6 +3,7 @@
 use rustc_hash::FxHashMap;
 use smallvec::SmallVec;
 use std::cmp::Ordering;
+use std::sync::RwLock;
 
 use crate::base::quantity::Ohms;
 use crate::base::table::Id;
@@ -18,6 +19,7 @@ use super::array::Array;
 use super::nature::{Nature, Natures};
 use super::noted::Noted;
 use super::order;
+use super::returns::Negative;
 use super::sanity::is_given;
 
 /// Everything below the judgement of one board, joined.
@@ -41,6 +43,7 @@ pub(crate) struct Board<'a> {
     inputs: FxHashMap<Id<Net>, SmallVec<[(u32, u32); 1]>>,
     coupled: Vec<Id<Element>>,
     several_returns: bool,
+    negatives: RwLock<FxHashMap<Id<Net>, Negative>>,
 }
 
 /// What a pin does to the net it is on, as far as the part is known.
@@ -87,7 +90,20 @@ impl<'a> Board<'a> {
             circuit.nets.ids().filter(|&net| rails.is_return(net) && !connectivity.pins(net).is_empty()).collect();
         returns.dedup_by(|a, b| connectivity.same(*a, *b));
         let several_returns = returns.iter().any(|&net| !connectivity.same(net, returns[0]));
-        Self { circuit, connectivity, rails, natures, noted, library, arrays, outputs, inputs, coupled, several_returns }
+        Self {
+            circuit,
+            connectivity,
+            rails,
+            natures,
+            noted,
+            library,
+            arrays,
+            outputs,
+            inputs,
+            coupled,
+            several_returns,
+            negatives: RwLock::default(),
+        }
     }
 
     /// The first channel whose output is on the copper of `net`: array and channel by row.
@@ -214,7 +230,9 @@ impl<'a> Board<'a> {
         let mut known: FxHashMap<Name, Option<&'a Profile>> = FxHashMap::default();
         let mut near = Vec::new();
         for (id, element) in self.circuit.elements.iter() {
-            let (true, Some(part_type)) = (element.fitted && element.pin_count > 2, element.part_type) else { continue };
+            let (true, Some(part_type)) = (element.fitted && element.pin_count > 2, element.part_type) else {
+                continue;
+            };
             if !matches!(self.natures.of(id), Nature::Block) {
                 continue;
             }
@@ -227,6 +245,18 @@ impl<'a> Board<'a> {
     /// Whether the netlist shows more than one return.
     pub(crate) fn has_several_returns(&self) -> bool {
         self.several_returns
+    }
+
+    /// What `find` says of the rail at `net`, asked once: a supply net has very many pins.
+    pub(crate) fn negative_of(&self, net: Id<Net>, find: impl FnOnce() -> Negative) -> Negative {
+        if let Some(known) = self.negatives.read().ok().and_then(|known| known.get(&net).copied()) {
+            return known;
+        }
+        let found = find();
+        if let Ok(mut known) = self.negatives.write() {
+            known.insert(net, found);
+        }
+        found
     }
 
     /// Whether the netlist is one sheet of several, as the notes say.

@@ -60,7 +60,11 @@ impl Ground<'_, '_> {
         }
         if clamp_looks == Some(Looks::Return) {
             // With the clamp pin on a return and the emitter on a rail the symbol has the two exchanged.
-            return if emitter_looks == Looks::Rail { Sanity::Explained(WrongMap::EmitterClampExchanged) } else { Sanity::Fails };
+            return if emitter_looks == Looks::Rail {
+                Sanity::Explained(WrongMap::EmitterClampExchanged)
+            } else {
+                Sanity::Fails
+            };
         }
         if self.shifted(pins) {
             return Sanity::Explained(WrongMap::Shifted);
@@ -121,7 +125,8 @@ impl Ground<'_, '_> {
         neighbours.into_iter().flatten().any(|index| {
             let beside = if index < emitter.pin.index { index.checked_sub(1) } else { Some(index + 1) };
             net_of(index).is_some_and(|net| self.looks(net) == Looks::Return)
-                && (index < emitter.pin.index || beside.and_then(net_of).is_some_and(|net| self.looks(net) == Looks::Rail))
+                && (index < emitter.pin.index
+                    || beside.and_then(net_of).is_some_and(|net| self.looks(net) == Looks::Rail))
         })
     }
 
@@ -175,7 +180,17 @@ mod tests {
         for name in ["VALVE_3", "EN1", "RELAY_EN", "SHEET/LIFT_UP", "OUT1", "NOZZLE"] {
             assert!(is_given(name), "{name}");
         }
-        for name in ["N001", "N$12", "$N_0001", "Net-(U1-Pad3)", "12", "unnamed_net1", "net@10", "N14371", "unconnected-(U1-Pad9)"] {
+        for name in [
+            "N001",
+            "N$12",
+            "$N_0001",
+            "Net-(U1-Pad3)",
+            "12",
+            "unnamed_net1",
+            "net@10",
+            "N14371",
+            "unconnected-(U1-Pad9)",
+        ] {
             assert!(!is_given(name), "{name}");
         }
     }

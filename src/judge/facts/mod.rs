@@ -45,13 +45,15 @@ pub(crate) const GROUPS: &[&[FactDef]] = &[
 
 /// The slots of an array. Under a pin map in doubt only what the record says counts; the rest waits for `doubt`.
 pub(crate) fn array(site: &Site<'_>, doubt: Option<&str>) -> Vec<Fact> {
-    let mut slots = Vec::with_capacity(record::Record::DEFS.len() + clamp::Clamp::DEFS.len() + spare::Spare::DEFS.len());
+    let mut slots =
+        Vec::with_capacity(record::Record::DEFS.len() + clamp::Clamp::DEFS.len() + spare::Spare::DEFS.len());
     record::Record::of(site).into_slots(&mut slots);
     clamp::Clamp::of(site).into_slots(&mut slots);
     spare::Spare::of(site).into_slots(&mut slots);
     if let Some(reason) = doubt {
         for (row, slot) in slots.iter_mut().enumerate() {
-            let of_record = record::Record::DEFS.get(row).is_some_and(|def| record::STANDS_IN_DOUBT.contains(&def.field));
+            let of_record =
+                record::Record::DEFS.get(row).is_some_and(|def| record::STANDS_IN_DOUBT.contains(&def.field));
             if !of_record {
                 *slot = Fact::reason(reason, Some(site.array.span));
             }

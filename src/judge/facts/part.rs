@@ -24,7 +24,8 @@ facts! {
 impl Part {
     /// An array by type whose node count fits no pin map.
     pub(crate) fn without_roles(board: &Board<'_>, element: Id<Element>, profile: &Profile, why: NoRoles) -> Self {
-        let mut counts: Vec<usize> = profile.maps.iter().filter(|map| map.confirmed).map(|map| map.pins.len()).collect();
+        let mut counts: Vec<usize> =
+            profile.maps.iter().filter(|map| map.confirmed).map(|map| map.pins.len()).collect();
         counts.sort_unstable();
         counts.dedup();
         let place = board.circuit.elements[element].span;

@@ -35,9 +35,10 @@ impl Feed {
     pub(crate) fn of(site: &Site<'_>, channel: &ChannelSite<'_>, load: &Load, ways: &Ways) -> Self {
         let board = site.board;
         let cut = cut_of(board, site.array, channel.channel, &channel.hanging, load, ways);
-        let led = load.branches.iter().any(|&row| {
-            channel.hanging.branches.list[row].any(board, |kind| kind == LinkKind::Led)
-        });
+        let led = load
+            .branches
+            .iter()
+            .any(|&row| channel.hanging.branches.list[row].any(board, |kind| kind == LinkKind::Led));
         let shared = shared_resistor(site, channel, load);
         Self {
             safety: Fact::flag(is_safety(site, channel, load)),
@@ -150,7 +151,10 @@ fn shared_resistor(site: &Site<'_>, channel: &ChannelSite<'_>, load: &Load) -> O
         if !meets_another {
             continue;
         }
-        return branch.links(board).find(|(link, _)| matches!(link.kind, LinkKind::Resistor(_))).map(|(link, _)| link.element);
+        return branch
+            .links(board)
+            .find(|(link, _)| matches!(link.kind, LinkKind::Resistor(_)))
+            .map(|(link, _)| link.element);
     }
     None
 }
@@ -158,7 +162,9 @@ fn shared_resistor(site: &Site<'_>, channel: &ChannelSite<'_>, load: &Load) -> O
 fn reversed(site: &Site<'_>, load: &Load) -> Fact {
     let fact = Fact::flag(load.led_reversed);
     match load.elements.first() {
-        Some(&element) if load.led_reversed => fact.at(site.board.circuit.elements[element].span, "points the wrong way"),
+        Some(&element) if load.led_reversed => {
+            fact.at(site.board.circuit.elements[element].span, "points the wrong way")
+        }
         _ => fact,
     }
 }
