@@ -274,12 +274,15 @@ fn naming(board: &Board<'_>, branch: &Branch, kind: LoadKind) -> SmallVec<[Id<El
     elements
 }
 
-/// Resistance of everything on the path; none where a part of it is not known.
+/// Resistance of everything on the path; none where a part of it is not known. An inductor without a resistance of its
+/// own behind a resistor is how SPICE decks draw a coil: the resistor is the winding's.
 fn series_ohms(board: &Board<'_>, branch: &Branch) -> Option<Ohms> {
+    let drawn_apart = branch.any(board, |kind| matches!(kind, LinkKind::Resistor(_)) && !kind.is_low_resistance());
     let mut sum = 0.0;
     for (link, _) in branch.links(board) {
         sum += match link.kind {
             LinkKind::Resistor(ohms) => ohms?.0,
+            LinkKind::Inductor if drawn_apart => board.winding_ohms(link.element).map_or(0.0, |ohms| ohms.0),
             kind if kind.is_inductive() || matches!(kind, LinkKind::Lamp | LinkKind::Buzzer) => {
                 board.winding_ohms(link.element)?.0
             }
