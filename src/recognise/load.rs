@@ -236,7 +236,7 @@ fn as_load(board: &Board<'_>, branch: &Branch, row: usize) -> Option<Load> {
     if branch.any(board, |kind| matches!(kind, LinkKind::Capacitor | LinkKind::Suppressor(_))) {
         return None;
     }
-    let elements = naming(board, branch, kind);
+    let elements = naming(board, branch);
     if elements.is_empty() {
         return None;
     }
@@ -253,7 +253,7 @@ fn as_load(board: &Board<'_>, branch: &Branch, row: usize) -> Option<Load> {
 }
 
 /// The elements that name a load: what does work, and the resistors beside it.
-fn naming(board: &Board<'_>, branch: &Branch, kind: LoadKind) -> SmallVec<[Id<Element>; 4]> {
+fn naming(board: &Board<'_>, branch: &Branch) -> SmallVec<[Id<Element>; 4]> {
     let mut elements: SmallVec<[Id<Element>; 4]> = branch
         .links(board)
         .filter(|(link, _)| {
@@ -261,14 +261,6 @@ fn naming(board: &Board<'_>, branch: &Branch, kind: LoadKind) -> SmallVec<[Id<El
         })
         .map(|(link, _)| link.element)
         .collect();
-    // A coil is named alone; its series resistor shows in the numbers.
-    if matches!(kind, LoadKind::RelayCoil | LoadKind::Solenoid | LoadKind::Motor | LoadKind::StepperWinding) {
-        let coils: SmallVec<[Id<Element>; 4]> =
-            branch.links(board).filter(|(link, _)| link.kind.is_inductive()).map(|(link, _)| link.element).collect();
-        if !coils.is_empty() {
-            elements = coils;
-        }
-    }
     board.sort_naturally(&mut elements);
     elements.dedup();
     elements
