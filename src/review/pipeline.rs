@@ -37,7 +37,7 @@ use crate::recognise::site::Site;
 
 use super::input::Input;
 use super::known::Names;
-use super::{ArraySummary, NotJudged, Review, subjects, summary};
+use super::{ArraySummary, NotJudged, Review, silence, subjects, summary};
 
 /// The rules that come with the program, read once.
 struct Rules {
@@ -203,6 +203,7 @@ fn judge_board(rules: &Rules, expanded: Expanded, notes: &Notes, held: bool, rev
             &mut judged,
         );
     }
+    review.not_judged.extend(silence::of_board(&board));
     review.assumptions = assumptions(&board);
     review.judged = judged.finish(&rules.shelf);
 }
@@ -240,6 +241,7 @@ fn array(board: &Board<'_>, number: usize, judge: &Judge<'_>, whole: &[Fact]) ->
     came.summary = Some(summary::array(&site));
     // Cause before effect: under a pin map that cannot be right every other fact is a guess.
     let doubt = matches!(site.array.sanity, Sanity::Explained(_)) && !facts::record::pins_confirmed(&site);
+    came.not_judged = silence::of_array(&site, doubt);
     let reason = format!("the pin map of {} is in doubt", site.array.refdes);
     let doubted = |slots: Vec<Fact>| {
         if doubt { slots.iter().map(|_| Fact::reason(reason.clone(), Some(site.array.span))).collect() } else { slots }
