@@ -207,11 +207,13 @@ fn kind_of(board: &Board<'_>, branch: &Branch) -> Option<LoadKind> {
 /// The load that one path makes, if it makes one.
 fn as_load(board: &Board<'_>, branch: &Branch, row: usize) -> Option<Load> {
     let kind = kind_of(board, branch)?;
-    let led_reversed = branch.blocked_by_led_only(board);
+    let led_reversed = branch.blocked_by_led_only(board) && !matches!(branch.end, End::Return(_));
     let into = branch.conducts_in(board) || led_reversed;
     let supply = match branch.end {
         End::Rail(net) if into => Supply::Rail(net),
         End::Connector(_) | End::Part(_) | End::Port(_) | End::Unnamed(_) if into => Supply::Maybe(branch.path.end),
+        // The base or gate of a transistor is no dead end.
+        End::Nowhere(net) if controls(board, net) => Supply::Maybe(net),
         End::Nowhere(net) => Supply::None(net),
         End::Return(net) if branch.conducts_out(board) => {
             // From 1 kohm on a resistor to the return is a pull-down or a divider, no load.
@@ -244,6 +246,11 @@ fn as_load(board: &Board<'_>, branch: &Branch, row: usize) -> Option<Load> {
         at_net: None,
         led_reversed,
     })
+}
+
+/// Whether the net holds a transistor's base or gate.
+fn controls(board: &Board<'_>, net: Id<Net>) -> bool {
+    board.connectivity.hops(net).any(|hop| board.connectivity.link(hop.link).kind == LinkKind::Control)
 }
 
 /// The elements that name a load: what does work, and the resistors beside it.
