@@ -10,6 +10,7 @@ use crate::connect::link::{Link, LinkKind};
 
 use super::board::Board;
 use super::branch::{Branch, Branches, End};
+use super::stub::stubs;
 
 /// A load of one channel.
 #[derive(Clone, Debug)]
@@ -131,7 +132,7 @@ impl LoadKind {
 impl Hanging {
     /// Sorts what hangs on `output`. `watched`: an input of another array or a known receiver shares its copper.
     pub(crate) fn of(board: &Board<'_>, output: Id<Net>) -> Self {
-        let branches = Branches::of(board, output);
+        let mut branches = Branches::of(board, output);
         let mut hanging = Self::default();
         hanging.collect_pins(board, &branches, output);
         let watched = !hanging.receivers.is_empty() || board.is_input(output);
@@ -144,6 +145,11 @@ impl Hanging {
             } else if is_suppressor(board, branch) {
                 hanging.suppressors.push(row);
             }
+        }
+        for stub in stubs(board, &branches, &loads) {
+            branches.list.push(stub);
+            let row = branches.list.len() - 1;
+            loads.extend(as_load(board, &branches.list[row], row));
         }
         drop_lesser(board, &branches, &mut loads);
         hanging.branches = branches;

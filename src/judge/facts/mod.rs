@@ -7,6 +7,7 @@ pub(crate) mod ask;
 pub(crate) mod board;
 pub(crate) mod clamp;
 pub(crate) mod driver;
+pub(crate) mod emitter;
 pub(crate) mod input;
 pub(crate) mod output;
 pub(crate) mod parallel;
@@ -32,6 +33,7 @@ pub(crate) const GROUPS: &[&[FactDef]] = &[
     rail::Supply::DEFS,
     part::Part::DEFS,
     record::Record::DEFS,
+    emitter::Emitter::DEFS,
     clamp::Clamp::DEFS,
     spare::Spare::DEFS,
     input::Input::DEFS,
@@ -45,8 +47,9 @@ pub(crate) const GROUPS: &[&[FactDef]] = &[
 
 /// The slots of an array. Under a pin map in doubt only what the record says counts; the rest waits for `doubt`.
 pub(crate) fn array(site: &Site<'_>, doubt: Option<&str>) -> Vec<Fact> {
-    let mut slots = Vec::with_capacity(record::Record::DEFS.len() + clamp::Clamp::DEFS.len() + spare::Spare::DEFS.len());
+    let mut slots = Vec::new();
     record::Record::of(site).into_slots(&mut slots);
+    emitter::Emitter::of(site).into_slots(&mut slots);
     clamp::Clamp::of(site).into_slots(&mut slots);
     spare::Spare::of(site).into_slots(&mut slots);
     if let Some(reason) = doubt {

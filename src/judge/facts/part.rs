@@ -21,6 +21,9 @@ facts! {
     }
 }
 
+/// Up to this many nodes an instance may be one channel or one gate of a part: inputs, output, emitter, clamp, supply.
+const CELL_NODES: usize = 6;
+
 impl Part {
     /// An array by type whose node count fits no pin map.
     pub(crate) fn without_roles(board: &Board<'_>, element: Id<Element>, profile: &Profile, why: NoRoles) -> Self {
@@ -31,10 +34,23 @@ impl Part {
         Self {
             known: Fact::flag(true),
             fits: match why {
+                // So few nodes: a gate or one channel, its pins not named.
+                NoRoles::Count if board.circuit.pins(element).len() <= CELL_NODES => Fact::ask(super::ask::pins_of(board, element)),
                 NoRoles::Count => Fact::flag(false).at(place, "this many nodes"),
                 NoRoles::NoMap => Fact::ask(super::ask::pins_of(board, element)),
             },
             fitting: Fact::texts(counts.iter().map(|count| count.to_string().into()).collect()),
+            looks_like_array: Fact::flag(false),
+            ..Self::common(board, element, profile)
+        }
+    }
+
+    /// An array whose pins have roles.
+    pub(crate) fn of_array(board: &Board<'_>, element: Id<Element>, profile: &Profile) -> Self {
+        Self {
+            known: Fact::flag(true),
+            fits: Fact::flag(true).at(board.circuit.elements[element].span, "its nodes"),
+            fitting: Fact::texts(Vec::new()),
             looks_like_array: Fact::flag(false),
             ..Self::common(board, element, profile)
         }
