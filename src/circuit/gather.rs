@@ -18,8 +18,8 @@ use crate::base::sources::Sources;
 use crate::base::span::{FileId, Span};
 use crate::base::table::Id;
 use crate::netlist;
-use crate::netlist::model::{Statement, StatementForm, Word};
 use crate::netlist::assignment::assignments;
+use crate::netlist::model::{Statement, StatementForm, Word};
 
 /// A file that the user named: one board, or one sheet of it.
 #[derive(Clone, Debug)]

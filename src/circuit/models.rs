@@ -7,9 +7,9 @@ use super::program::{ModelLine, Program, text};
 use crate::base::notice::Notice;
 use crate::base::sources::Sources;
 use crate::base::table::Id;
+use crate::netlist::assignment::assignments;
 use crate::netlist::element::ModelHint;
 use crate::netlist::model::{Word, WordForm};
-use crate::netlist::assignment::assignments;
 
 /// How many models may rest on each other by `ako:`.
 const AKO_DEPTH: usize = 16;

@@ -10,10 +10,10 @@ use crate::base::names::Name;
 use crate::base::quantity::{Ohms, Volts};
 use crate::base::span::{FileId, Span};
 use crate::base::table::Id;
+use crate::netlist::assignment::assignments;
 use crate::netlist::element::{ElementForm, ValueForm};
 use crate::netlist::model::{PartClass, Reading, Word, WordForm};
 use crate::netlist::number::{self, Doubt, Number, Spelling};
-use crate::netlist::assignment::assignments;
 
 impl Compiler<'_> {
     pub(super) fn value(

@@ -28,8 +28,11 @@ pub(crate) struct Potential {
 /// Chains start at node `0`, then at nets whose names say return, then at the lower end of any source that is left.
 pub(crate) fn potentials(circuit: &Circuit, connectivity: &Connectivity) -> Vec<Option<Potential>> {
     let mut known = vec![None; circuit.nets.len()];
-    let sources: Vec<&Link> =
-        connectivity.links().map(|(_, link)| link).filter(|link| matches!(link.kind, LinkKind::Source(Some(_)))).collect();
+    let sources: Vec<&Link> = connectivity
+        .links()
+        .map(|(_, link)| link)
+        .filter(|link| matches!(link.kind, LinkKind::Source(Some(_))))
+        .collect();
     if circuit.nets.is_empty() || sources.is_empty() {
         return known;
     }

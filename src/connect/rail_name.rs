@@ -30,8 +30,8 @@ pub(crate) enum ReturnKind {
 
 /// Names of returns, upper case. Common practice.
 const POWER_RETURNS: [&str; 18] = [
-    "0", "GND", "PGND", "DGND", "VSS", "0V", "RTN", "V-", "M", "GNDPWR", "GNDD", "VEE", "GROUND", "PWRGND", "GND1", "GND2",
-    "MGND", "COM_24V",
+    "0", "GND", "PGND", "DGND", "VSS", "0V", "RTN", "V-", "M", "GNDPWR", "GNDD", "VEE", "GROUND", "PWRGND", "GND1",
+    "GND2", "MGND", "COM_24V",
 ];
 
 /// Names of analogue and signal grounds, upper case. Common practice.
@@ -42,15 +42,15 @@ const EARTHS: [&str; 5] = ["EARTH", "CHASSIS", "PE", "GNDE", "FE"];
 
 /// Names of supplies without a number, upper case. Common practice.
 const SUPPLIES: [&str; 24] = [
-    "VCC", "VDD", "VBAT", "VBATT", "VIN", "VM", "VMOT", "VMOTOR", "V+", "VPP", "VSUP", "VSUPPLY", "VPWR", "VLOAD", "VCOIL",
-    "VRELAY", "VDDA", "VCCA", "VDDIO", "VCCIO", "VBUS", "VSYS", "VAUX", "PWR",
+    "VCC", "VDD", "VBAT", "VBATT", "VIN", "VM", "VMOT", "VMOTOR", "V+", "VPP", "VSUP", "VSUPPLY", "VPWR", "VLOAD",
+    "VCOIL", "VRELAY", "VDDA", "VCCA", "VDDIO", "VCCIO", "VBUS", "VSYS", "VAUX", "PWR",
 ];
 
 /// Words that may stand beside a voltage in a rail's name, upper case. Common practice.
 const RAIL_WORDS: [&str; 40] = [
-    "A", "B", "C", "D", "F", "P", "V", "VCC", "VDD", "VBAT", "VIN", "VM", "VMOT", "DC", "DIG", "ANA", "LOGIC", "IO", "SYS",
-    "MOT", "MOTOR", "COIL", "RELAY", "RLY", "LAMP", "LED", "PWR", "POWER", "SUP", "SUPPLY", "MAIN", "AUX", "STBY", "BUS",
-    "RAIL", "FUSED", "SAFE", "FIELD", "LOAD", "EXT",
+    "A", "B", "C", "D", "F", "P", "V", "VCC", "VDD", "VBAT", "VIN", "VM", "VMOT", "DC", "DIG", "ANA", "LOGIC", "IO",
+    "SYS", "MOT", "MOTOR", "COIL", "RELAY", "RLY", "LAMP", "LED", "PWR", "POWER", "SUP", "SUPPLY", "MAIN", "AUX",
+    "STBY", "BUS", "RAIL", "FUSED", "SAFE", "FIELD", "LOAD", "EXT",
 ];
 
 /// Bytes of a name that may be a rail's or a return's; longer ones are automatic names.
@@ -131,7 +131,9 @@ fn rail(name: &str) -> NameSays {
         }
     }
     match volts {
-        Some(value) if value > 0.0 && value < MAX_RAIL_VOLTS => NameSays::Rail(Volts(if negative { -value } else { value })),
+        Some(value) if value > 0.0 && value < MAX_RAIL_VOLTS => {
+            NameSays::Rail(Volts(if negative { -value } else { value }))
+        }
         _ => supply_with_word(name),
     }
 }
@@ -141,7 +143,11 @@ fn supply_with_word(name: &str) -> NameSays {
     let mut parts = name.trim_start_matches('+').split('_');
     let (Some(first), Some(second), None) = (parts.next(), parts.next(), parts.next()) else { return NameSays::Signal };
     let (supply, word) = (|w: &str| SUPPLIES.contains(&w), |w: &str| RAIL_WORDS.contains(&w));
-    if (supply(first) && word(second)) || (word(first) && supply(second)) { NameSays::UnknownRail } else { NameSays::Signal }
+    if (supply(first) && word(second)) || (word(first) && supply(second)) {
+        NameSays::UnknownRail
+    } else {
+        NameSays::Signal
+    }
 }
 
 /// A name of a rail that no comparison of voltages should reach: mains and anodes are named otherwise.
@@ -218,7 +224,9 @@ mod tests {
 
     #[test]
     fn returns_are_told_with_their_kind() {
-        for name in ["0", "GND", "gnd", "PGND", "VSS", "0V", "RTN", "V-", "M", "COM_24V", "GND_MOT", "PWR_GND", "GNDPWR"] {
+        for name in
+            ["0", "GND", "gnd", "PGND", "VSS", "0V", "RTN", "V-", "M", "COM_24V", "GND_MOT", "PWR_GND", "GNDPWR"]
+        {
             check(name, NameSays::Return(ReturnKind::Power));
         }
         for name in ["AGND", "GNDA", "GND_A", "SGND"] {
@@ -232,8 +240,27 @@ mod tests {
     #[test]
     fn switched_nodes_and_signals_are_no_rails() {
         for name in [
-            "+12V_FAN-", "RELAY5V_EN", "N001", "N$12", "OUT1", "IN12", "Net-(U1-Pad3)", "A12V3B", "EN_3V3_OK", "M_1", "VALVE1",
-            "N_24", "1", "12", "LED5", "COIL1", "D0", "A0", "VM_EN", "0V5_REF_X", "MOT_A",
+            "+12V_FAN-",
+            "RELAY5V_EN",
+            "N001",
+            "N$12",
+            "OUT1",
+            "IN12",
+            "Net-(U1-Pad3)",
+            "A12V3B",
+            "EN_3V3_OK",
+            "M_1",
+            "VALVE1",
+            "N_24",
+            "1",
+            "12",
+            "LED5",
+            "COIL1",
+            "D0",
+            "A0",
+            "VM_EN",
+            "0V5_REF_X",
+            "MOT_A",
         ] {
             check(name, NameSays::Signal);
         }

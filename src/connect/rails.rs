@@ -152,13 +152,14 @@ impl Rails {
             Some(NotedRole::Return) => return Role::Return(return_kind(says)),
             _ => {}
         }
-        let from_source = potential.and_then(|potential| Some((potential, potential.source?))).map(|(potential, source)| Level {
-            low: potential.low,
-            nominal: Volts((potential.low.0 + potential.high.0) / 2.0),
-            high: potential.high,
-            origin: Origin::Source(source),
-            tolerance_stated: false,
-        });
+        let from_source =
+            potential.and_then(|potential| Some((potential, potential.source?))).map(|(potential, source)| Level {
+                low: potential.low,
+                nominal: Volts((potential.low.0 + potential.high.0) / 2.0),
+                high: potential.high,
+                origin: Origin::Source(source),
+                tolerance_stated: false,
+            });
         // A source that moves is a signal's driver, not a supply; 1 mV tells it from rounding.
         let steady = from_source.filter(|level| level.high.0 - level.low.0 < 1e-3);
         let moving = from_source.is_some() && steady.is_none();

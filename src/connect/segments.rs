@@ -47,9 +47,8 @@ impl Connectivity {
     pub(crate) fn segments(&self, root: Id<Net>, mut pass: impl FnMut(Id<Link>, &Link) -> bool) -> Segments {
         let mut segments = Segments { nets: vec![root], ..Segments::default() };
         let mut order_of = FxHashMap::from_iter([(root, 0usize)]);
-        let mut hops_of = |net: Id<Net>| -> Vec<Hop> {
-            self.hops(net).filter(|hop| pass(hop.link, self.link(hop.link))).collect()
-        };
+        let mut hops_of =
+            |net: Id<Net>| -> Vec<Hop> { self.hops(net).filter(|hop| pass(hop.link, self.link(hop.link))).collect() };
         let mut stack = vec![Visit { net: root, by: None, hops: hops_of(root), next: 0, order: 0, low: 0 }];
         while let Some(top) = stack.last_mut() {
             if let Some(&hop) = top.hops.get(top.next) {
@@ -69,7 +68,14 @@ impl Connectivity {
                 let order = segments.nets.len();
                 order_of.insert(hop.to, order);
                 segments.nets.push(hop.to);
-                stack.push(Visit { net: hop.to, by: Some(hop.link), hops: hops_of(hop.to), next: 0, order, low: order });
+                stack.push(Visit {
+                    net: hop.to,
+                    by: Some(hop.link),
+                    hops: hops_of(hop.to),
+                    next: 0,
+                    order,
+                    low: order,
+                });
                 continue;
             }
             let Some(done) = stack.pop() else { break };

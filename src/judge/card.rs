@@ -115,7 +115,9 @@ pub(crate) fn class_of(name: &str) -> Option<Class> {
 
 /// The verdict of this name.
 pub(crate) fn verdict_of(name: &str) -> Option<Verdict> {
-    [Verdict::Holds, Verdict::Broken, Verdict::Unproven, Verdict::NotApplicable].into_iter().find(|verdict| verdict.name() == name)
+    [Verdict::Holds, Verdict::Broken, Verdict::Unproven, Verdict::NotApplicable]
+        .into_iter()
+        .find(|verdict| verdict.name() == name)
 }
 
 /// The part of a card's file before its examples.
@@ -140,7 +142,11 @@ pub(crate) fn read(file: FileId, stem: &str, text: &str, vocabulary: &Vocabulary
     let reader = Reader { file, vocabulary };
     let written: Written = toml::from_str(head(text)).map_err(|error| {
         let place = error.span().unwrap_or(0..0);
-        Box::new(Notice::at(Severity::Error, Span::new(file, place.start, place.end), format!("the card cannot be read: {}", error.message())))
+        Box::new(Notice::at(
+            Severity::Error,
+            Span::new(file, place.start, place.end),
+            format!("the card cannot be read: {}", error.message()),
+        ))
     })?;
     reader.card(stem, text, written)
 }
@@ -153,7 +159,11 @@ struct Reader<'a> {
 impl Reader<'_> {
     fn card(&self, stem: &str, text: &str, written: Written) -> Result<Card, Box<Notice>> {
         if written.name.get_ref() != stem {
-            return Err(self.at(&written.name, format!("the card is named `{}` and its file `{stem}`", written.name.get_ref()), None));
+            return Err(self.at(
+                &written.name,
+                format!("the card is named `{}` and its file `{stem}`", written.name.get_ref()),
+                None,
+            ));
         }
         let Some(scope) = Scope::ALL.into_iter().find(|scope| scope.name() == written.scope.get_ref()) else {
             let hint = near(written.scope.get_ref(), Scope::ALL.iter().map(|scope| scope.name()));
@@ -170,14 +180,22 @@ impl Reader<'_> {
         class_when.sort_by_key(|(class, _)| *class);
         let worst = class_when.first().map_or(class, |(moved, _)| class.min(*moved));
         if worst <= Class::Damage && written.caution.is_none() {
-            return Err(self.at(&written.class, format!("a card that can be `{}` needs a caution", worst.name()), None));
+            return Err(self.at(
+                &written.class,
+                format!("a card that can be `{}` needs a caution", worst.name()),
+                None,
+            ));
         }
         if written.sources.get_ref().is_empty() {
             return Err(self.at(&written.sources, "a card needs a source", Some("common practice")));
         }
         for other in &written.overlaps {
             if !CARD_NAMES.contains(&other.get_ref().as_str()) {
-                return Err(self.at(other, format!("there is no card `{}`", other.get_ref()), near(other.get_ref(), CARD_NAMES.iter().copied())));
+                return Err(self.at(
+                    other,
+                    format!("there is no card `{}`", other.get_ref()),
+                    near(other.get_ref(), CARD_NAMES.iter().copied()),
+                ));
             }
         }
         let also_show = written.also_show.iter().map(|name| self.fact(name, &terms)).collect::<Result<_, _>>()?;
@@ -223,7 +241,11 @@ impl Reader<'_> {
         });
         found.ok_or_else(|| {
             let names = self.vocabulary.names_in_reach(terms.scope);
-            self.at(name, format!("there is no fact `{}`", name.get_ref()), near(name.get_ref(), names.iter().map(String::as_str)))
+            self.at(
+                name,
+                format!("there is no fact `{}`", name.get_ref()),
+                near(name.get_ref(), names.iter().map(String::as_str)),
+            )
         })
     }
 

@@ -136,7 +136,11 @@ impl Lowering<'_> {
                 Some(row) => Ok(Typed::Number(Number::Limit(row))),
                 None => {
                     let hint = near(field, self.terms.limits.iter().map(String::as_str));
-                    Err(fault(node, format!("the card has no limit `{field}`"), hint.map(|name| format!("did you mean `limits.{name}`?"))))
+                    Err(fault(
+                        node,
+                        format!("the card has no limit `{field}`"),
+                        hint.map(|name| format!("did you mean `limits.{name}`?")),
+                    ))
                 }
             };
         }
@@ -178,7 +182,9 @@ impl Lowering<'_> {
             (operators::LESS, 2) => Ok(Typed::Test(Test::Compare(Order::Less, *number(0)?, *number(1)?))),
             (operators::LESS_EQUALS, 2) => Ok(Typed::Test(Test::Compare(Order::LessOrEqual, *number(0)?, *number(1)?))),
             (operators::GREATER, 2) => Ok(Typed::Test(Test::Compare(Order::Less, *number(1)?, *number(0)?))),
-            (operators::GREATER_EQUALS, 2) => Ok(Typed::Test(Test::Compare(Order::LessOrEqual, *number(1)?, *number(0)?))),
+            (operators::GREATER_EQUALS, 2) => {
+                Ok(Typed::Test(Test::Compare(Order::LessOrEqual, *number(1)?, *number(0)?)))
+            }
             (operators::EQUALS, 2) => Ok(Typed::Test(self.equal(node, call)?)),
             (operators::NOT_EQUALS, 2) => Ok(Typed::Test(Test::Not(Box::new(self.equal(node, call)?)))),
             (operators::IN, 2) => self.among(node, call),
@@ -224,7 +230,9 @@ impl Lowering<'_> {
         if self.item.is_some() || loop_.iter_var2.is_some() {
             return Err(wrong());
         }
-        let (Expr::Literal(LiteralValue::Boolean(start)), Expr::Call(step)) = (&loop_.accu_init.expr, &loop_.loop_step.expr) else {
+        let (Expr::Literal(LiteralValue::Boolean(start)), Expr::Call(step)) =
+            (&loop_.accu_init.expr, &loop_.loop_step.expr)
+        else {
             return Err(wrong());
         };
         let [_, condition] = &step.args[..] else { return Err(wrong()) };

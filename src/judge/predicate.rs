@@ -136,12 +136,24 @@ impl Test {
             Self::And(a, b) => match a.with_item(view, item) {
                 Some(false) => Some(false),
                 Some(true) => b.with_item(view, item),
-                None => if b.with_item(view, item) == Some(false) { Some(false) } else { None },
+                None => {
+                    if b.with_item(view, item) == Some(false) {
+                        Some(false)
+                    } else {
+                        None
+                    }
+                }
             },
             Self::Or(a, b) => match a.with_item(view, item) {
                 Some(true) => Some(true),
                 Some(false) => b.with_item(view, item),
-                None => if b.with_item(view, item) == Some(true) { Some(true) } else { None },
+                None => {
+                    if b.with_item(view, item) == Some(true) {
+                        Some(true)
+                    } else {
+                        None
+                    }
+                }
             },
             Self::Compare(order, a, b) => compare(*order, a.range(view)?, b.range(view)?),
             Self::Same(a, b) => Some(a.text(view, item)? == b.text(view, item)?),

@@ -55,7 +55,12 @@ impl Template {
     ///
     /// # Errors
     /// What minijinja says of the template.
-    pub(crate) fn render(&self, vocabulary: &Vocabulary, view: &View<'_>, limits: &[(String, f64)]) -> Result<String, minijinja::Error> {
+    pub(crate) fn render(
+        &self,
+        vocabulary: &Vocabulary,
+        view: &View<'_>,
+        limits: &[(String, f64)],
+    ) -> Result<String, minijinja::Error> {
         if !self.text.contains('{') {
             return Ok(self.text.clone());
         }

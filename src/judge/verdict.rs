@@ -67,7 +67,9 @@ impl<'s> Judge<'s> {
         card.applies.slots(&mut read);
         let (class, class_gaps) = class_of(card, view);
         let render = |template: &super::template::Template| {
-            template.render(vocabulary, view, &card.limits).unwrap_or_else(|error| format!("{} ({error})", template.text()))
+            template
+                .render(vocabulary, view, &card.limits)
+                .unwrap_or_else(|error| format!("{} ({error})", template.text()))
         };
         let questions = questions_of(vocabulary, view, &in_the_way);
         let because = |slot: &Slot| view.fact(*slot).and_then(|fact| fact.because.as_deref());
@@ -122,7 +124,9 @@ fn judge(card: &Card, view: &View<'_>) -> (Verdict, Vec<Slot>) {
             card.applies.slots(&mut read);
             card.holds.slots(&mut read);
             // A number from memory may leave a verdict open; it never breaks one.
-            let remembered = |slot: &Slot| view.fact(*slot).and_then(|fact| fact.because.as_ref()).is_some_and(|because| because.from_memory);
+            let remembered = |slot: &Slot| {
+                view.fact(*slot).and_then(|fact| fact.because.as_ref()).is_some_and(|because| because.from_memory)
+            };
             let from_memory: Vec<Slot> = read.into_iter().filter(remembered).collect();
             if from_memory.is_empty() { (Verdict::Broken, from_memory) } else { (Verdict::Unproven, from_memory) }
         }
@@ -153,7 +157,11 @@ fn gaps(because: &Because) -> impl Iterator<Item = Gap> + '_ {
     because.gaps.iter().cloned().chain(assumed)
 }
 
-fn questions_of(vocabulary: &super::vocabulary::Vocabulary, view: &View<'_>, slots: &[Slot]) -> Vec<(String, Vec<Question>)> {
+fn questions_of(
+    vocabulary: &super::vocabulary::Vocabulary,
+    view: &View<'_>,
+    slots: &[Slot],
+) -> Vec<(String, Vec<Question>)> {
     slots
         .iter()
         .map(|&slot| {
@@ -243,7 +251,8 @@ fn assumptions(card: &Card, view: &View<'_>, read: &[Slot], verdict: Verdict) ->
 fn passes_when(test: &Test, vocabulary: &super::vocabulary::Vocabulary, view: &View<'_>) -> Option<String> {
     match test {
         Test::And(a, b) | Test::Or(a, b) => {
-            let failed = |test: &Test| if test.truth(view) == Some(false) { passes_when(test, vocabulary, view) } else { None };
+            let failed =
+                |test: &Test| if test.truth(view) == Some(false) { passes_when(test, vocabulary, view) } else { None };
             failed(a).or_else(|| failed(b))
         }
         Test::Compare(order, a, b) if *order != Order::Equal => {
@@ -324,11 +333,13 @@ impl Partial {
         }
         let mut ordered: Vec<((String, &'static str), OpenQuestion)> = questions.into_iter().collect();
         ordered.sort_by(|(_, a), (_, b)| a.worst.cmp(&b.worst).then(b.judgements.cmp(&a.judgements)));
-        let rows: BTreeMap<&(String, &'static str), usize> = ordered.iter().enumerate().map(|(row, (key, _))| (key, row)).collect();
+        let rows: BTreeMap<&(String, &'static str), usize> =
+            ordered.iter().enumerate().map(|(row, (key, _))| (key, row)).collect();
         let mut judged = Judged::default();
         for Draft { mut finding, questions } in self.findings {
             for missing in &mut finding.missing {
-                let asked = questions.iter().find(|(fact, _)| *fact == missing.fact).map_or(&[][..], |(_, asked)| asked);
+                let asked =
+                    questions.iter().find(|(fact, _)| *fact == missing.fact).map_or(&[][..], |(_, asked)| asked);
                 missing.questions = asked.iter().filter_map(|q| rows.get(&(q.at.clone(), q.asks)).copied()).collect();
                 missing.questions.dedup();
             }
@@ -337,7 +348,8 @@ impl Partial {
         for list in [&mut judged.findings, &mut judged.held] {
             list.sort_by(|a, b| {
                 let key = |finding: &Finding| (finding.class, finding.verdict);
-                key(a).cmp(&key(b))
+                key(a)
+                    .cmp(&key(b))
                     .then_with(|| crate::recognise::order::natural(&a.subject.name, &b.subject.name))
                     .then_with(|| a.card.cmp(&b.card))
             });

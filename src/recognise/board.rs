@@ -87,7 +87,19 @@ impl<'a> Board<'a> {
             circuit.nets.ids().filter(|&net| rails.is_return(net) && !connectivity.pins(net).is_empty()).collect();
         returns.dedup_by(|a, b| connectivity.same(*a, *b));
         let several_returns = returns.iter().any(|&net| !connectivity.same(net, returns[0]));
-        Self { circuit, connectivity, rails, natures, noted, library, arrays, outputs, inputs, coupled, several_returns }
+        Self {
+            circuit,
+            connectivity,
+            rails,
+            natures,
+            noted,
+            library,
+            arrays,
+            outputs,
+            inputs,
+            coupled,
+            several_returns,
+        }
     }
 
     /// The first channel whose output is on the copper of `net`: array and channel by row.
@@ -219,7 +231,9 @@ impl<'a> Board<'a> {
         let mut known: FxHashMap<Name, Option<&'a Profile>> = FxHashMap::default();
         let mut near = Vec::new();
         for (id, element) in self.circuit.elements.iter() {
-            let (true, Some(part_type)) = (element.fitted && element.pin_count > 2, element.part_type) else { continue };
+            let (true, Some(part_type)) = (element.fitted && element.pin_count > 2, element.part_type) else {
+                continue;
+            };
             if !matches!(self.natures.of(id), Nature::Block) {
                 continue;
             }

@@ -68,7 +68,9 @@ impl Branches {
             match board.rails.role(net) {
                 Role::Rail(_) | Role::Return(_) => At::End,
                 Role::Signal if board.channel_at_output(net).is_some() => At::End,
-                Role::Signal if board.foreign_pins(net).next().is_some() || board.circuit.nets[net].port => At::EndAndOn,
+                Role::Signal if board.foreign_pins(net).next().is_some() || board.circuit.nets[net].port => {
+                    At::EndAndOn
+                }
                 Role::Signal => At::On,
             }
         };
@@ -81,7 +83,8 @@ impl Branches {
         }
         // Pins right at the output are ends of a path without hops.
         list.extend(
-            ends_at(board, output).map(|end| Branch { path: Path { hops: SmallVec::new(), end: output, dead_end: false }, end }),
+            ends_at(board, output)
+                .map(|end| Branch { path: Path { hops: SmallVec::new(), end: output, dead_end: false }, end }),
         );
         Self { list, cut: found.cut }
     }
@@ -118,7 +121,9 @@ fn tie(board: &Board<'_>, net: Id<Net>) -> Option<End> {
 
 fn ends_at<'b>(board: &'b Board<'_>, net: Id<Net>) -> impl Iterator<Item = End> + 'b {
     let port = board.circuit.nets[net].port.then_some(End::Port(net));
-    let pins = board.foreign_pins(net).map(|pin| if board.is_connector(pin.element) { End::Connector(pin) } else { End::Part(pin) });
+    let pins = board
+        .foreign_pins(net)
+        .map(|pin| if board.is_connector(pin.element) { End::Connector(pin) } else { End::Part(pin) });
     port.into_iter().chain(pins)
 }
 

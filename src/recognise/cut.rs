@@ -21,7 +21,14 @@ pub(crate) struct Cut {
 }
 
 /// The part nearest to the coil that can open and would leave it without a way; one that leaves a way where none is worse.
-pub(crate) fn cut_of(board: &Board<'_>, array: &Array<'_>, channel: &Channel, hanging: &Hanging, load: &Load, ways: &Ways) -> Option<Cut> {
+pub(crate) fn cut_of(
+    board: &Board<'_>,
+    array: &Array<'_>,
+    channel: &Channel,
+    hanging: &Hanging,
+    load: &Load,
+    ways: &Ways,
+) -> Option<Cut> {
     let output = channel.output.net;
     let mut cuts: Vec<Cut> = Vec::new();
     for &row in &load.branches {
@@ -56,7 +63,9 @@ fn survives(board: &Board<'_>, array: &Array<'_>, channel: &Channel, ways: &Ways
             let link = board.connectivity.link(hop.link);
             let to_return = board.rails.is_return(hop.to);
             // A diode from the return to the coil's side carries the current on; a capacitor takes the energy.
-            to_return && (link.kind == LinkKind::Capacitor || (!hop.forward && matches!(link.kind, LinkKind::Diode | LinkKind::Schottky | LinkKind::Zener(_))))
+            to_return
+                && (link.kind == LinkKind::Capacitor
+                    || (!hop.forward && matches!(link.kind, LinkKind::Diode | LinkKind::Schottky | LinkKind::Zener(_))))
         })
     });
     by_way || by_clamp || held

@@ -19,11 +19,16 @@ fn is_known(program: &Program, library: &Library, definition: &Definition) -> bo
     }
     // A part whose body would have to be read for its links stays open.
     let opens = |kind| {
-        matches!(kind, FamilyKind::Sensor | FamilyKind::Regulator | FamilyKind::Battery | FamilyKind::Transformer | FamilyKind::Bridge)
+        matches!(
+            kind,
+            FamilyKind::Sensor
+                | FamilyKind::Regulator
+                | FamilyKind::Battery
+                | FamilyKind::Transformer
+                | FamilyKind::Bridge
+        )
     };
-    let known = library
-        .family(PartClass::Block, Some(name))
-        .is_some_and(|hit| hit.by_type && !opens(hit.family.kind));
+    let known = library.family(PartClass::Block, Some(name)).is_some_and(|hit| hit.by_type && !opens(hit.family.kind));
     // A sheet may be named after what it does: one that holds an array is a sheet, whatever its name says.
     known && !program.part_types_in(definition).any(|name| is_array(program.names.text(name)))
 }

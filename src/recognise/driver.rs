@@ -81,7 +81,11 @@ impl Drivers {
         }
         drivers.at(board, &Path { hops: SmallVec::new(), end: input, dead_end: false });
         let found = board.connectivity.paths(input, carries, |net| {
-            if tie(board, net).is_some() || board.channel_at_output(net).is_some() || board.is_input(net) { At::End } else { At::EndAndOn }
+            if tie(board, net).is_some() || board.channel_at_output(net).is_some() || board.is_input(net) {
+                At::End
+            } else {
+                At::EndAndOn
+            }
         });
         drivers.cut = found.cut;
         for path in &found.found {
@@ -126,7 +130,9 @@ impl Drivers {
             let link = board.connectivity.link(hop.link);
             match link.kind {
                 LinkKind::Transistor => self.push(board, DriverKind::Transistor(link.element), path),
-                LinkKind::Source(_) | LinkKind::CurrentSource => self.push(board, DriverKind::Source(link.element), path),
+                LinkKind::Source(_) | LinkKind::CurrentSource => {
+                    self.push(board, DriverKind::Source(link.element), path)
+                }
                 _ => {}
             }
         }

@@ -74,7 +74,11 @@ pub(crate) fn find<'p>(ground: &Ground<'_, 'p>, noted: &Noted<'_>) -> Found<'p> 
 }
 
 /// The pin roles of every instance that is an array and whose pins have roles.
-pub(crate) fn instances<'n>(circuit: &'n Circuit, natures: &'n Natures<'_>, noted: &'n Noted<'_>) -> impl Iterator<Item = PinRoles> + 'n {
+pub(crate) fn instances<'n>(
+    circuit: &'n Circuit,
+    natures: &'n Natures<'_>,
+    noted: &'n Noted<'_>,
+) -> impl Iterator<Item = PinRoles> + 'n {
     circuit.elements.iter().filter(|(_, row)| row.fitted).filter_map(move |(element, _)| match natures.of(element) {
         Nature::Array(hit) => roles(circuit, element, hit.profile, noted.part(element)).ok(),
         _ => None,

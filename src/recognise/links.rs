@@ -15,7 +15,12 @@ use super::nature::{Kind, Nature, Natures, pin_role, zener_volts};
 use super::noted::Noted;
 
 /// All links of a board, in the order of the netlist. `outputs` are the nets at outputs of arrays.
-pub(crate) fn links(circuit: &Circuit, natures: &Natures<'_>, noted: &Noted<'_>, outputs: &FxHashSet<Id<Net>>) -> Vec<Link> {
+pub(crate) fn links(
+    circuit: &Circuit,
+    natures: &Natures<'_>,
+    noted: &Noted<'_>,
+    outputs: &FxHashSet<Id<Net>>,
+) -> Vec<Link> {
     let mut maker = Maker { circuit, natures, noted, outputs, links: Vec::with_capacity(circuit.elements.len()) };
     for (id, element) in circuit.elements.iter() {
         if element.fitted && !noted.is_left_out(id) {
@@ -52,7 +57,9 @@ impl Maker<'_> {
 
     fn known(&mut self, id: Id<Element>, element: &Element, kind: &Kind<'_>) {
         let pins = usize::from(element.pin_count);
-        if matches!(kind.family_kind(), Some(FamilyKind::Relay)) && pins > 2 || kind.class == PartClass::Relay && pins > 2 {
+        if matches!(kind.family_kind(), Some(FamilyKind::Relay)) && pins > 2
+            || kind.class == PartClass::Relay && pins > 2
+        {
             return self.relay(id, kind);
         }
         match kind.class {
@@ -130,7 +137,8 @@ impl Maker<'_> {
         let text = |name| self.circuit.names.text(name).to_ascii_uppercase();
         let model = element.model.map(|model| text(self.circuit.models[model].name));
         let word = model.or(element.part_type.map(text)).unwrap_or_default();
-        word.split(|c: char| !c.is_ascii_alphabetic()).any(|part| part == "LED") || text(element.refdes).starts_with("LED")
+        word.split(|c: char| !c.is_ascii_alphabetic()).any(|part| part == "LED")
+            || text(element.refdes).starts_with("LED")
     }
 
     fn lamp(&mut self, id: Id<Element>, element: &Element, kind: &Kind<'_>) {
@@ -160,9 +168,12 @@ impl Maker<'_> {
         let Some(family) = kind.family else { return };
         let count = self.circuit.elements[id].pin_count;
         let role = |index: u16| pin_role(self.circuit, family, Pin { element: id, index });
-        let with = |wanted: FamilyPin| (0..count).filter(|&index| role(index) == Some(wanted)).map(usize::from).collect::<Vec<_>>();
+        let with = |wanted: FamilyPin| {
+            (0..count).filter(|&index| role(index) == Some(wanted)).map(usize::from).collect::<Vec<_>>()
+        };
         let (coils, commons) = (with(FamilyPin::Coil), with(FamilyPin::Common));
-        let contacts: Vec<usize> = [FamilyPin::NormallyOpen, FamilyPin::NormallyClosed].into_iter().flat_map(with).collect();
+        let contacts: Vec<usize> =
+            [FamilyPin::NormallyOpen, FamilyPin::NormallyClosed].into_iter().flat_map(with).collect();
         let coil = self.coil(kind);
         for pair in coils.chunks_exact(2) {
             self.add(id, pair[0], pair[1], coil);
@@ -206,8 +217,13 @@ impl Maker<'_> {
                 .unwrap_or(otherwise)
         };
         match family.kind {
-            FamilyKind::Npn | FamilyKind::Pnp | FamilyKind::NpnDarlington | FamilyKind::NMosfet | FamilyKind::PMosfet => {
-                let (collector, control, emitter) = (at(FamilyPin::Collector, 0), at(FamilyPin::Control, 1), at(FamilyPin::Emitter, 2));
+            FamilyKind::Npn
+            | FamilyKind::Pnp
+            | FamilyKind::NpnDarlington
+            | FamilyKind::NMosfet
+            | FamilyKind::PMosfet => {
+                let (collector, control, emitter) =
+                    (at(FamilyPin::Collector, 0), at(FamilyPin::Control, 1), at(FamilyPin::Emitter, 2));
                 self.add(id, collector, emitter, LinkKind::Transistor);
                 self.add(id, control, emitter, LinkKind::Control);
             }

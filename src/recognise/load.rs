@@ -160,8 +160,14 @@ impl Hanging {
     fn collect_pins(&mut self, board: &Board<'_>, branches: &Branches, output: Id<Net>) {
         for branch in &branches.list {
             match branch.end {
-                End::Connector(pin) if branch.is_bare(board) && !self.connectors.contains(&pin) => self.connectors.push(pin),
-                End::Part(pin) if !branch.any(board, LinkKind::is_load) && board.watches(pin) && !self.receivers.contains(&pin) => {
+                End::Connector(pin) if branch.is_bare(board) && !self.connectors.contains(&pin) => {
+                    self.connectors.push(pin)
+                }
+                End::Part(pin)
+                    if !branch.any(board, LinkKind::is_load)
+                        && board.watches(pin)
+                        && !self.receivers.contains(&pin) =>
+                {
                     self.receivers.push(pin);
                 }
                 _ => {}
@@ -177,9 +183,9 @@ impl Hanging {
     }
 
     fn is_pull_up(&self, board: &Board<'_>, branch: &Branch, watched: bool) -> bool {
-        let only_resistors = branch.links(board).all(|(link, _)| {
-            matches!(link.kind, LinkKind::Resistor(_)) || link.kind.is_low_resistance()
-        });
+        let only_resistors = branch
+            .links(board)
+            .all(|(link, _)| matches!(link.kind, LinkKind::Resistor(_)) || link.kind.is_low_resistance());
         let resistive = branch.any(board, |kind| matches!(kind, LinkKind::Resistor(_))) && !branch.is_bare(board);
         watched
             && only_resistors
@@ -263,16 +269,15 @@ fn controls(board: &Board<'_>, net: Id<Net>) -> bool {
 fn naming(board: &Board<'_>, branch: &Branch, kind: LoadKind) -> SmallVec<[Id<Element>; 4]> {
     let mut elements: SmallVec<[Id<Element>; 4]> = branch
         .links(board)
-        .filter(|(link, _)| link.kind.is_load() || (matches!(link.kind, LinkKind::Resistor(_)) && !link.kind.is_low_resistance()))
+        .filter(|(link, _)| {
+            link.kind.is_load() || (matches!(link.kind, LinkKind::Resistor(_)) && !link.kind.is_low_resistance())
+        })
         .map(|(link, _)| link.element)
         .collect();
     // A coil is named alone; its series resistor shows in the numbers.
     if matches!(kind, LoadKind::RelayCoil | LoadKind::Solenoid | LoadKind::Motor | LoadKind::StepperWinding) {
-        let coils: SmallVec<[Id<Element>; 4]> = branch
-            .links(board)
-            .filter(|(link, _)| link.kind.is_inductive())
-            .map(|(link, _)| link.element)
-            .collect();
+        let coils: SmallVec<[Id<Element>; 4]> =
+            branch.links(board).filter(|(link, _)| link.kind.is_inductive()).map(|(link, _)| link.element).collect();
         if !coils.is_empty() {
             elements = coils;
         }
@@ -288,7 +293,9 @@ fn series_ohms(board: &Board<'_>, branch: &Branch) -> Option<Ohms> {
     for (link, _) in branch.links(board) {
         sum += match link.kind {
             LinkKind::Resistor(ohms) => ohms?.0,
-            kind if kind.is_inductive() || matches!(kind, LinkKind::Lamp | LinkKind::Buzzer) => board.winding_ohms(link.element)?.0,
+            kind if kind.is_inductive() || matches!(kind, LinkKind::Lamp | LinkKind::Buzzer) => {
+                board.winding_ohms(link.element)?.0
+            }
             LinkKind::Diode | LinkKind::Schottky | LinkKind::Led | LinkKind::Zener(_) => 0.0,
             kind if kind.is_low_resistance() => 0.0,
             _ => return None,
@@ -302,13 +309,19 @@ fn join(board: &Board<'_>, branches: &Branches, loads: &mut Vec<Load>, load: Loa
     let working = |load: &Load| -> SmallVec<[Id<Element>; 4]> {
         load.branches
             .iter()
-            .flat_map(|&row| branches.list[row].links(board).filter(|(link, _)| link.kind.is_load()).map(|(link, _)| link.element))
+            .flat_map(|&row| {
+                branches.list[row].links(board).filter(|(link, _)| link.kind.is_load()).map(|(link, _)| link.element)
+            })
             .collect()
     };
     let mine = working(&load);
     let shared = loads.iter_mut().find(|other| {
         let theirs = working(other);
-        if mine.is_empty() { other.elements == load.elements } else { theirs.iter().any(|element| mine.contains(element)) }
+        if mine.is_empty() {
+            other.elements == load.elements
+        } else {
+            theirs.iter().any(|element| mine.contains(element))
+        }
     });
     match shared {
         Some(other) => {
@@ -353,11 +366,16 @@ fn is_suppressor(board: &Board<'_>, branch: &Branch) -> bool {
             kind,
             LinkKind::Diode | LinkKind::Schottky | LinkKind::Zener(_) | LinkKind::Suppressor(_) | LinkKind::Capacitor
         )
-    }) && !branch.any(board, |kind| kind.is_inductive() || matches!(kind, LinkKind::Lamp | LinkKind::Led | LinkKind::Buzzer))
+    }) && !branch
+        .any(board, |kind| kind.is_inductive() || matches!(kind, LinkKind::Lamp | LinkKind::Led | LinkKind::Buzzer))
 }
 
 /// The winding on a load's path that is nearest to the output: the link and the net at its output's side.
-pub(crate) fn winding<'b>(board: &'b Board<'_>, branch: &'b Branch, output: Id<Net>) -> Option<(&'b Link, Id<Net>, Id<Net>)> {
+pub(crate) fn winding<'b>(
+    board: &'b Board<'_>,
+    branch: &'b Branch,
+    output: Id<Net>,
+) -> Option<(&'b Link, Id<Net>, Id<Net>)> {
     let mut near = output;
     for hop in &branch.path.hops {
         let link = board.connectivity.link(hop.link);

@@ -55,7 +55,8 @@ impl<'p> Natures<'p> {
     /// Looks every element up, each kind of part once.
     pub(crate) fn find(circuit: &Circuit, library: &'p Library, profiles: &FxHashMap<Id<Element>, String>) -> Self {
         let mut natures = Self::default();
-        let mut known: FxHashMap<(PartClass, Option<Name>, Option<Id<Model>>, Reading, bool), u32> = FxHashMap::default();
+        let mut known: FxHashMap<(PartClass, Option<Name>, Option<Id<Model>>, Reading, bool), u32> =
+            FxHashMap::default();
         for (id, element) in circuit.elements.iter() {
             let class = class_of(circuit, element);
             let many = element.pin_count > 2;
@@ -63,7 +64,13 @@ impl<'p> Natures<'p> {
             if let Some(profile) = profiles.get(&id).and_then(|name| library.profile(name)) {
                 natures.of.push(natures.kinds.len() as u32);
                 let hit = Hit { profile, reading: crate::parts::names::Reading::default() };
-                natures.kinds.push(Kind { nature: Nature::Array(hit), class, family: None, by_type: false, volts: None });
+                natures.kinds.push(Kind {
+                    nature: Nature::Array(hit),
+                    class,
+                    family: None,
+                    by_type: false,
+                    volts: None,
+                });
                 continue;
             }
             let row = *known.entry(key).or_insert_with(|| {
@@ -98,7 +105,9 @@ impl<'p> Natures<'p> {
             Some(Drive::Configurable | Drive::QuasiBidirectional) | None => PinUse::Unknown,
         };
         match pin_role(circuit, family, pin) {
-            Some(FamilyPin::Input | FamilyPin::Enable | FamilyPin::ResetN | FamilyPin::Control | FamilyPin::Adjust) => PinUse::Listens,
+            Some(FamilyPin::Input | FamilyPin::Enable | FamilyPin::ResetN | FamilyPin::Control | FamilyPin::Adjust) => {
+                PinUse::Listens
+            }
             Some(FamilyPin::Output) => drives,
             _ => PinUse::Unknown,
         }
@@ -136,7 +145,9 @@ fn class_of(circuit: &Circuit, element: &Element) -> PartClass {
     }
     match designator::class(circuit.names.text(element.refdes)) {
         // A block is no element of SPICE, whatever letter its designator has.
-        Some(PartClass::Resistor | PartClass::Capacitor | PartClass::Inductor | PartClass::Coupling) | None => PartClass::Block,
+        Some(PartClass::Resistor | PartClass::Capacitor | PartClass::Inductor | PartClass::Coupling) | None => {
+            PartClass::Block
+        }
         Some(class) => class,
     }
 }
@@ -171,33 +182,37 @@ fn nature_of(circuit: &Circuit, element: &Element, class: PartClass, family: Opt
             let named = element.block.is_some_and(|block| !circuit.block_types[block].ports.is_empty());
             if named { Nature::Links } else { Nature::Block }
         }
-        (PartClass::Block | PartClass::Transistor | PartClass::Transformer | PartClass::Optocoupler, kind) => match kind {
-            Some(kind) if kind.is_diode() && pins == 2 => Nature::Links,
-            Some(
-                FamilyKind::Lamp
-                | FamilyKind::Motor
-                | FamilyKind::Solenoid
-                | FamilyKind::Valve
-                | FamilyKind::Fan
-                | FamilyKind::MagneticBuzzer
-                | FamilyKind::PiezoBuzzer
-                | FamilyKind::Relay
-                | FamilyKind::Ferrite
-                | FamilyKind::Fuse
-                | FamilyKind::ResettableFuse
-                | FamilyKind::Switch
-                | FamilyKind::Battery
-                | FamilyKind::TvsBidirectional
-                | FamilyKind::Varistor,
-            ) if pins == 2 => Nature::Links,
-            Some(FamilyKind::Npn | FamilyKind::Pnp | FamilyKind::NpnDarlington | FamilyKind::NMosfet | FamilyKind::PMosfet)
-                if pins == 3 =>
-            {
-                Nature::Links
+        (PartClass::Block | PartClass::Transistor | PartClass::Transformer | PartClass::Optocoupler, kind) => {
+            match kind {
+                Some(kind) if kind.is_diode() && pins == 2 => Nature::Links,
+                Some(
+                    FamilyKind::Lamp
+                    | FamilyKind::Motor
+                    | FamilyKind::Solenoid
+                    | FamilyKind::Valve
+                    | FamilyKind::Fan
+                    | FamilyKind::MagneticBuzzer
+                    | FamilyKind::PiezoBuzzer
+                    | FamilyKind::Relay
+                    | FamilyKind::Ferrite
+                    | FamilyKind::Fuse
+                    | FamilyKind::ResettableFuse
+                    | FamilyKind::Switch
+                    | FamilyKind::Battery
+                    | FamilyKind::TvsBidirectional
+                    | FamilyKind::Varistor,
+                ) if pins == 2 => Nature::Links,
+                Some(
+                    FamilyKind::Npn
+                    | FamilyKind::Pnp
+                    | FamilyKind::NpnDarlington
+                    | FamilyKind::NMosfet
+                    | FamilyKind::PMosfet,
+                ) if pins == 3 => Nature::Links,
+                Some(FamilyKind::Optocoupler | FamilyKind::SolidStateRelay) if pins == 4 => Nature::Links,
+                _ => Nature::Block,
             }
-            Some(FamilyKind::Optocoupler | FamilyKind::SolidStateRelay) if pins == 4 => Nature::Links,
-            _ => Nature::Block,
-        },
+        }
         (PartClass::Switch | PartClass::Jumper, _) if pins > 3 && element.reading != Reading::Spice => Nature::Block,
         (PartClass::Motor | PartClass::Solenoid | PartClass::Buzzer | PartClass::Lamp, _) if pins > 2 => Nature::Block,
         _ => Nature::Links,

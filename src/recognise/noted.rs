@@ -86,7 +86,8 @@ pub(crate) fn find_pin(circuit: &Circuit, element: Id<Element>, pin: &str) -> Op
 impl<'n> Noted<'n> {
     /// Finds on the board what `notes` speaks of. Names that do not exist are told elsewhere and left out here.
     pub(crate) fn find(circuit: &Circuit, directory: &Directory, notes: &'n Notes) -> Self {
-        let mut noted = Self { partial: notes.board.partial.as_ref().is_some_and(|said| said.value), ..Self::default() };
+        let mut noted =
+            Self { partial: notes.board.partial.as_ref().is_some_and(|said| said.value), ..Self::default() };
         for group in notes.together.iter().filter(|group| group.always.as_ref().is_some_and(|said| said.value)) {
             noted.together.push(group.channels.iter().filter_map(|said| channel_of(&said.value)).collect());
         }
@@ -205,7 +206,9 @@ impl<'n> Noted<'n> {
 
     fn holds_all(groups: &[Vec<(String, u32)>], channels: &[(&str, u32)]) -> bool {
         groups.iter().any(|group| {
-            channels.iter().all(|(array, channel)| group.iter().any(|(a, c)| a.eq_ignore_ascii_case(array) && c == channel))
+            channels
+                .iter()
+                .all(|(array, channel)| group.iter().any(|(a, c)| a.eq_ignore_ascii_case(array) && c == channel))
         })
     }
 

@@ -43,7 +43,8 @@ pub(crate) fn groups_of(board: &Board<'_>, number: usize) -> Vec<Group> {
 
 /// Channels whose outputs are on one copper, or joined by fuses, ferrites and resistors that are next to nothing.
 fn joined_channels(board: &Board<'_>, output: Id<Net>) -> Vec<(usize, usize)> {
-    let as_rows = |net: Id<Net>| board.channels_at_output(net).iter().map(|&(array, channel)| (array as usize, channel as usize));
+    let as_rows =
+        |net: Id<Net>| board.channels_at_output(net).iter().map(|&(array, channel)| (array as usize, channel as usize));
     let mut members: Vec<(usize, usize)> = as_rows(output).collect();
     let reach = board.connectivity.reach(
         output,
@@ -83,7 +84,9 @@ pub(crate) fn inputs(board: &Board<'_>, group: &Group, drivers: &[Drivers]) -> I
 /// The one net that moves an input, where it is one: a pin, a source, a rail or a return.
 fn source(board: &Board<'_>, drivers: &Drivers) -> Option<Id<Net>> {
     let mut nets = drivers.active().map(|driver| match driver.kind {
-        DriverKind::PushPull(pin) | DriverKind::OpenDrain(pin) | DriverKind::MayDrive(pin) => buffered(board, pin.element, driver.net),
+        DriverKind::PushPull(pin) | DriverKind::OpenDrain(pin) | DriverKind::MayDrive(pin) => {
+            buffered(board, pin.element, driver.net)
+        }
         _ => driver.net,
     });
     let first = nets.next().or_else(|| drivers.list.first().map(|driver| driver.net))?;

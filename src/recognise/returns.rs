@@ -91,7 +91,8 @@ pub(crate) fn could_join_outside(board: &Board<'_>, a: Id<Net>, b: Id<Net>) -> b
         let reach = board.connectivity.segments(start, |_, link| is_return_link(board, link));
         reach.cut
             || reach.nets.iter().any(|&net| {
-                board.circuit.nets[net].port || board.connectivity.pins(net).iter().any(|pin| board.is_connector(pin.element))
+                board.circuit.nets[net].port
+                    || board.connectivity.pins(net).iter().any(|pin| board.is_connector(pin.element))
             })
     };
     leads_out(a) && leads_out(b)

@@ -70,12 +70,15 @@ impl Ground<'_, '_> {
 
     /// Loads hang on inputs that nothing drives, and what drives is on outputs without a load.
     fn mirrored(&self, pins: &[ArrayPin]) -> bool {
-        let nets = |output: bool| {
-            pins.iter()
-                .filter(move |pin| if output { matches!(pin.role, Role::Output(_)) } else { matches!(pin.role, Role::Input(_)) })
-                .map(|pin| pin.net)
-                .filter(|&net| self.looks(net) == Looks::Other)
-        };
+        let nets =
+            |output: bool| {
+                pins.iter()
+                    .filter(move |pin| {
+                        if output { matches!(pin.role, Role::Output(_)) } else { matches!(pin.role, Role::Input(_)) }
+                    })
+                    .map(|pin| pin.net)
+                    .filter(|&net| self.looks(net) == Looks::Other)
+            };
         nets(false).any(|net| self.loaded(net))
             && nets(true).any(|net| self.driven(net))
             && !nets(false).any(|net| self.driven(net))
@@ -117,11 +120,16 @@ impl Ground<'_, '_> {
         let looks = |index: Option<usize>| index.and_then(|index| nodes.get(index)).map(|&net| self.looks(net));
         let alone = |net: Option<&Id<Net>>| net.is_some_and(|&net| self.connectivity.pins(net).len() <= 1);
         let at = usize::from(emitter.pin.index);
-        let Some(clamp) = pins.iter().find(|pin| pin.pin.index == emitter.pin.index + 1 && matches!(pin.role, Role::Clamp(_))) else {
+        let Some(clamp) =
+            pins.iter().find(|pin| pin.pin.index == emitter.pin.index + 1 && matches!(pin.role, Role::Clamp(_)))
+        else {
             return false;
         };
-        let late = looks(Some(at + 1)) == Some(Looks::Return) && looks(Some(at + 2)) == Some(Looks::Rail) && alone(nodes.first());
-        let first_driven = nodes.first().is_some_and(|&net| self.driven(net)) && pins.iter().all(|pin| pin.pin.index > 0);
+        let late = looks(Some(at + 1)) == Some(Looks::Return)
+            && looks(Some(at + 2)) == Some(Looks::Rail)
+            && alone(nodes.first());
+        let first_driven =
+            nodes.first().is_some_and(|&net| self.driven(net)) && pins.iter().all(|pin| pin.pin.index > 0);
         let early = emitter_looks == Looks::Rail
             && looks(at.checked_sub(1)) == Some(Looks::Return)
             && self.looks(clamp.net) == Looks::Other
@@ -139,7 +147,10 @@ impl Ground<'_, '_> {
             net,
             |link, _| match link.kind {
                 LinkKind::Resistor(ohms) => ohms.is_none_or(|ohms| ohms.0 <= SENSE_OHMS),
-                kind => kind.is_low_resistance() || matches!(kind, LinkKind::Transistor | LinkKind::Switch | LinkKind::Inductor),
+                kind => {
+                    kind.is_low_resistance()
+                        || matches!(kind, LinkKind::Transistor | LinkKind::Switch | LinkKind::Inductor)
+                }
             },
             |net| if self.rails.is_signal(net) { At::On } else { At::End },
         );
@@ -160,7 +171,9 @@ impl Ground<'_, '_> {
     fn own(&self, net: Id<Net>) -> Looks {
         match self.rails.role(net) {
             NetRole::Return(_) => Looks::Return,
-            NetRole::Rail(rail) if self.rails.rails[rail].level.is_some_and(|level| level.nominal.0 < 0.0) => Looks::Return,
+            NetRole::Rail(rail) if self.rails.rails[rail].level.is_some_and(|level| level.nominal.0 < 0.0) => {
+                Looks::Return
+            }
             NetRole::Rail(_) => Looks::Rail,
             NetRole::Signal => Looks::Other,
         }
@@ -168,16 +181,21 @@ impl Ground<'_, '_> {
 
     /// Something that does work hangs on the net, directly or behind a resistor.
     fn loaded(&self, net: Id<Net>) -> bool {
-        let works = |net: Id<Net>| self.connectivity.hops(net).any(|hop| self.connectivity.link(hop.link).kind.is_load());
+        let works =
+            |net: Id<Net>| self.connectivity.hops(net).any(|hop| self.connectivity.link(hop.link).kind.is_load());
         works(net)
             || self.connectivity.hops(net).any(|hop| {
-                matches!(self.connectivity.link(hop.link).kind, LinkKind::Resistor(_)) && self.rails.is_signal(hop.to) && works(hop.to)
+                matches!(self.connectivity.link(hop.link).kind, LinkKind::Resistor(_))
+                    && self.rails.is_signal(hop.to)
+                    && works(hop.to)
             })
     }
 
     /// Something that drives, or may drive, is on the net.
     fn driven(&self, net: Id<Net>) -> bool {
-        let kinds = |kind| matches!(kind, LinkKind::Source(_) | LinkKind::CurrentSource | LinkKind::Transistor | LinkKind::Switch);
+        let kinds = |kind| {
+            matches!(kind, LinkKind::Source(_) | LinkKind::CurrentSource | LinkKind::Transistor | LinkKind::Switch)
+        };
         self.circuit.nets[net].port
             || self.connectivity.pins(net).iter().any(|pin| self.natures.kind(pin.element).is_foreign())
             || self.connectivity.hops(net).any(|hop| kinds(self.connectivity.link(hop.link).kind))
@@ -211,7 +229,17 @@ mod tests {
         for name in ["VALVE_3", "EN1", "RELAY_EN", "SHEET/LIFT_UP", "OUT1", "NOZZLE"] {
             assert!(is_given(name), "{name}");
         }
-        for name in ["N001", "N$12", "$N_0001", "Net-(U1-Pad3)", "12", "unnamed_net1", "net@10", "N14371", "unconnected-(U1-Pad9)"] {
+        for name in [
+            "N001",
+            "N$12",
+            "$N_0001",
+            "Net-(U1-Pad3)",
+            "12",
+            "unnamed_net1",
+            "net@10",
+            "N14371",
+            "unconnected-(U1-Pad9)",
+        ] {
             assert!(!is_given(name), "{name}");
         }
     }

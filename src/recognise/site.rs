@@ -55,7 +55,8 @@ impl<'b> ChannelSite<'b> {
         off_board::add(board, array, channel, &mut hanging);
         let ways = hanging.loads.iter().map(|load| Ways::of(board, array, channel, &hanging, load)).collect();
         let drivers: Vec<Drivers> = channel.inputs.iter().map(|pin| Drivers::of(board, pin.net)).collect();
-        let spare = board.is_lone(channel.output.net) && drivers.iter().all(|drivers| drivers.active().next().is_none());
+        let spare =
+            board.is_lone(channel.output.net) && drivers.iter().all(|drivers| drivers.active().next().is_none());
         Self { channel, hanging, ways, drivers, spare }
     }
 
@@ -80,9 +81,9 @@ impl Site<'_> {
     pub(crate) fn load_note(&self, channel: &ChannelSite<'_>, load: &Load) -> Option<&NotedLoad<'_>> {
         let noted = self.board.noted;
         let at_pin = load.behind.and_then(|pin| noted.load_at_pin(pin));
-        at_pin
-            .or_else(|| noted.load_at_channel(&self.array.refdes, channel.channel.index))
-            .or_else(|| self.board.connectivity.joined(channel.output()).into_iter().find_map(|net| noted.load_at_net(net)))
+        at_pin.or_else(|| noted.load_at_channel(&self.array.refdes, channel.channel.index)).or_else(|| {
+            self.board.connectivity.joined(channel.output()).into_iter().find_map(|net| noted.load_at_net(net))
+        })
     }
 
     /// Whether the board looks like one sheet of several: no input of the array is driven, and all their nets bear
@@ -114,6 +115,10 @@ impl Site<'_> {
 
     /// The first part that drives an input of the array.
     pub(crate) fn driving_part(&self) -> Option<Id<Element>> {
-        self.channels.iter().flat_map(|channel| &channel.drivers).flat_map(Drivers::active).find_map(|driver| driver.part())
+        self.channels
+            .iter()
+            .flat_map(|channel| &channel.drivers)
+            .flat_map(Drivers::active)
+            .find_map(|driver| driver.part())
     }
 }

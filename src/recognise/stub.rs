@@ -21,13 +21,17 @@ pub(super) fn stubs(board: &Board<'_>, branches: &Branches, loads: &[Load]) -> V
         let kind = |hop: &Hop| board.connectivity.link(hop.link).kind;
         let hops = &branch.path.hops;
         let length = hops.iter().position(|hop| kind(hop) == LinkKind::Capacitor).unwrap_or(hops.len());
-        let to_output = matches!(branch.end, End::Output(..)) && board.connectivity.hops(branch.path.end).nth(1).is_none();
+        let to_output =
+            matches!(branch.end, End::Output(..)) && board.connectivity.hops(branch.path.end).nth(1).is_none();
         let Some(last) = length.checked_sub(1).and_then(|last| hops.get(last)) else { continue };
         if length == hops.len() && !to_output {
             continue;
         }
-        let works: SmallVec<[Id<Element>; 4]> =
-            hops[..length].iter().filter(|hop| kind(hop).is_load()).map(|hop| board.connectivity.link(hop.link).element).collect();
+        let works: SmallVec<[Id<Element>; 4]> = hops[..length]
+            .iter()
+            .filter(|hop| kind(hop).is_load())
+            .map(|hop| board.connectivity.link(hop.link).element)
+            .collect();
         let known = |stub: &Branch| stub.elements(board).iter().any(|element| works.contains(element));
         if works.is_empty() || works.iter().any(|&element| claimed(element)) || stubs.iter().any(known) {
             continue;

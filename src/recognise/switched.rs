@@ -34,11 +34,13 @@ pub(crate) fn switched_nodes(
             return false;
         }
         // One pin of an array, its output; a second one would be a clamp pin, and that is fed from here.
-        let arrays = connectivity.pins(net).iter().filter(|pin| matches!(natures.of(pin.element), Nature::Array(_))).count();
+        let arrays =
+            connectivity.pins(net).iter().filter(|pin| matches!(natures.of(pin.element), Nature::Array(_))).count();
         let blocks = connectivity.pins(net).iter().any(|pin| natures.kind(pin.element).is_foreign());
         let links = || connectivity.hops(net).map(|hop| (connectivity.link(hop.link).kind, hop.to));
         let harmless = |kind: LinkKind| {
-            kind.is_load() || matches!(kind, LinkKind::Resistor(_) | LinkKind::Diode | LinkKind::Schottky | LinkKind::Zener(_))
+            kind.is_load()
+                || matches!(kind, LinkKind::Resistor(_) | LinkKind::Diode | LinkKind::Schottky | LinkKind::Zener(_))
         };
         arrays == 1
             && !blocks

@@ -15,8 +15,8 @@ use crate::connect::rails::Role;
 
 use super::array::{Array, Channel};
 use super::board::Board;
-use super::load::{Load, Supply, winding};
 use super::load::Hanging;
+use super::load::{Load, Supply, winding};
 
 /// One way for the stored energy.
 #[derive(Clone, Debug)]
@@ -118,7 +118,8 @@ impl Ways {
     }
 
     fn own(&mut self, board: &Board<'_>, near: Id<Net>, others: &[Id<Net>], own: Option<Link>) {
-        let pass = |link: &Link, forward: bool| own.is_none_or(|own| own.element != link.element) && passes(link, forward);
+        let pass =
+            |link: &Link, forward: bool| own.is_none_or(|own| own.element != link.element) && passes(link, forward);
         let found = board.connectivity.paths(near, pass, |net| ends_at(board, net, others));
         self.cut |= found.cut;
         for path in found.found {

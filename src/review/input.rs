@@ -72,7 +72,8 @@ fn notes_of(netlist: &Path, options: &Options, standard_input: bool) -> Result<O
     };
     let name = path.to_string_lossy().into_owned();
     let bytes = from_file(path).map_err(|cause| unreadable(&name, &cause))?;
-    let text = String::from_utf8(bytes).map_err(|_| Notice::general(Severity::Error, format!("{name} is not UTF-8 text")))?;
+    let text =
+        String::from_utf8(bytes).map_err(|_| Notice::general(Severity::Error, format!("{name} is not UTF-8 text")))?;
     Ok(Some((name, text)))
 }
 

@@ -22,7 +22,12 @@ pub(super) struct Names<'a> {
 
 impl<'a> Names<'a> {
     /// Lists them.
-    pub(super) fn of(circuit: &'a Circuit, directory: &'a Directory, library: &'a Library, arrays: &'a [Array<'a>]) -> Self {
+    pub(super) fn of(
+        circuit: &'a Circuit,
+        directory: &'a Directory,
+        library: &'a Library,
+        arrays: &'a [Array<'a>],
+    ) -> Self {
         Self {
             circuit,
             directory,
@@ -40,7 +45,10 @@ impl Known for Names<'_> {
         match kind {
             NameKind::Net => self.directory.net(name).is_some(),
             // A package of gates has no element of its own name.
-            NameKind::Part => self.directory.part(name).is_some() || self.arrays.iter().any(|array| array.refdes.eq_ignore_ascii_case(name)),
+            NameKind::Part => {
+                self.directory.part(name).is_some()
+                    || self.arrays.iter().any(|array| array.refdes.eq_ignore_ascii_case(name))
+            }
             NameKind::Type => self.types.iter().any(|known| known.eq_ignore_ascii_case(name)),
             NameKind::Family => self.library.levels(name).is_some(),
             NameKind::Profile => self.library.profile(name).is_some(),

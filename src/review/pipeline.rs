@@ -12,8 +12,8 @@ use crate::circuit::model::{Circuit, Net};
 use crate::circuit::{self, Expanded, Limits};
 use crate::connect::graph::Connectivity;
 use crate::connect::rails::{NetNote, NotedRole, Rails};
-use crate::judge::fact::{Fact, SCOPES, Scope};
 use crate::judge::card::Card;
+use crate::judge::fact::{Fact, SCOPES, Scope};
 use crate::judge::facts;
 use crate::judge::facts::rail::Joint;
 use crate::judge::predicate::Reach;
@@ -70,7 +70,9 @@ pub(super) fn net_names(input: Input) -> Vec<String> {
         Ok(Expanded { circuit, .. }) => circuit
             .nets
             .iter()
-            .filter(|(id, net)| net.sheet.index() == 0 && circuit.elements.ids().any(|element| circuit.pins(element).contains(id)))
+            .filter(|(id, net)| {
+                net.sheet.index() == 0 && circuit.elements.ids().any(|element| circuit.pins(element).contains(id))
+            })
             .map(|(_, net)| circuit.names.text(net.name).to_owned())
             .collect(),
         Err(_) => Vec::new(),
@@ -102,7 +104,9 @@ pub(super) fn run(name: &str, input: Input, held: bool) -> Vec<Review> {
     let notes_broken = notes_notices.iter().find(|notice| notice.severity == Severity::Error).cloned();
     let program = match circuit::load(&mut sources, &[root], &allowed, &limits) {
         Ok(program) => program,
-        Err(notice) => return vec![Review { sources: Arc::new(sources), ..Review::unreadable(name.to_owned(), *notice) }],
+        Err(notice) => {
+            return vec![Review { sources: Arc::new(sources), ..Review::unreadable(name.to_owned(), *notice) }];
+        }
     };
     let closed = closed(&program, &rules.library);
     let boards = circuit::boards(&program, &closed);
@@ -167,7 +171,8 @@ fn judge_board(rules: &Rules, expanded: Expanded, notes: &Notes, held: bool, rev
     let board = Board::new(&circuit, &connectivity, &rails, &natures, &noted, &rules.library, arrays);
     let judge = Judge::new(&rules.shelf, held);
     let whole = whole(&board);
-    let arrays: Vec<Came> = (0..board.arrays.len()).into_par_iter().map(|number| array(&board, number, &judge, &whole)).collect();
+    let arrays: Vec<Came> =
+        (0..board.arrays.len()).into_par_iter().map(|number| array(&board, number, &judge, &whole)).collect();
     let mut judged = Partial::default();
     let mut fed: FxHashMap<Id<Net>, (Vec<String>, bool)> = FxHashMap::default();
     for came in arrays {
@@ -189,17 +194,32 @@ fn judge_board(rules: &Rules, expanded: Expanded, notes: &Notes, held: bool, rev
         let mut slots = Vec::new();
         let element = array.elements[0];
         facts::part::Part::of_array(&board, element, array.profile).into_slots(&mut slots);
-        judge.subject(Scope::Part, &|| subjects::part(&board, element), &reach(&[(Scope::Part, &slots), (Scope::Board, &whole)]), &mut judged);
+        judge.subject(
+            Scope::Part,
+            &|| subjects::part(&board, element),
+            &reach(&[(Scope::Part, &slots), (Scope::Board, &whole)]),
+            &mut judged,
+        );
     }
     for (element, profile, why) in without_roles {
         let mut slots = Vec::new();
         facts::part::Part::without_roles(&board, element, profile, why).into_slots(&mut slots);
-        judge.subject(Scope::Part, &|| subjects::part(&board, element), &reach(&[(Scope::Part, &slots), (Scope::Board, &whole)]), &mut judged);
+        judge.subject(
+            Scope::Part,
+            &|| subjects::part(&board, element),
+            &reach(&[(Scope::Part, &slots), (Scope::Board, &whole)]),
+            &mut judged,
+        );
     }
     for (element, profile) in board.near_arrays() {
         let mut slots = Vec::new();
         facts::part::Part::near(&board, element, profile).into_slots(&mut slots);
-        judge.subject(Scope::Part, &|| subjects::part(&board, element), &reach(&[(Scope::Part, &slots), (Scope::Board, &whole)]), &mut judged);
+        judge.subject(
+            Scope::Part,
+            &|| subjects::part(&board, element),
+            &reach(&[(Scope::Part, &slots), (Scope::Board, &whole)]),
+            &mut judged,
+        );
     }
     review.assumptions = assumptions(&board);
     review.judged = judged.finish(&rules.shelf);
@@ -239,7 +259,9 @@ fn array(board: &Board<'_>, number: usize, judge: &Judge<'_>, whole: &[Fact]) ->
     // Cause before effect: under a pin map that cannot be right every other fact is a guess.
     let doubt = matches!(site.array.sanity, Sanity::Explained(_)) && !facts::record::pins_confirmed(&site);
     let reason = format!("the pin map of {} is in doubt", site.array.refdes);
-    let doubted = |slots: Vec<Fact>| if doubt { slots.iter().map(|_| Fact::reason(reason.clone(), Some(site.array.span))).collect() } else { slots };
+    let doubted = |slots: Vec<Fact>| {
+        if doubt { slots.iter().map(|_| Fact::reason(reason.clone(), Some(site.array.span))).collect() } else { slots }
+    };
     let array_slots = facts::array(&site, if doubt { Some(&reason) } else { None });
     let out = &mut came.judged;
     judge.subject(
@@ -328,11 +350,17 @@ fn assumptions(board: &Board<'_>) -> Vec<(String, String)> {
     for (_, rail) in board.rails.rails.iter() {
         let Some(level) = rail.level else { continue };
         if level.origin == crate::connect::rails::Origin::Name {
-            list.push((format!("{} is {}", board.circuit.net_name(rail.net), level.nominal), "read from the net's name".to_owned()));
+            list.push((
+                format!("{} is {}", board.circuit.net_name(rail.net), level.nominal),
+                "read from the net's name".to_owned(),
+            ));
         }
     }
     for array in board.arrays.iter().filter(|array| array.pins_from == crate::recognise::array::PinsFrom::PinNumbers) {
-        list.push((format!("the nodes of {} stand in pin-number order", array.refdes), "its node count fits the part".to_owned()));
+        list.push((
+            format!("the nodes of {} stand in pin-number order", array.refdes),
+            "its node count fits the part".to_owned(),
+        ));
     }
     if !board.arrays.is_empty() && !board.has_several_returns() {
         list.push(("the return has no resistance".to_owned(), "the netlist shows a single return net".to_owned()));

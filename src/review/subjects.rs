@@ -39,14 +39,24 @@ pub(super) fn load(site: &Site<'_>, channel: &ChannelSite<'_>, load: &Load) -> S
     let name = format!("{} {at}", channel_name(site, channel));
     // A net's name is no place: a load that only the notes put there is the channel's.
     let place = if at.starts_with("net:") { channel_name(site, channel) } else { name.clone() };
-    Subject { scope: Scope::Load, name, refdes: vec![site.array.refdes.clone()], channel: Some(channel.channel.index), place }
+    Subject {
+        scope: Scope::Load,
+        name,
+        refdes: vec![site.array.refdes.clone()],
+        channel: Some(channel.channel.index),
+        place,
+    }
 }
 
 /// A parallel group: `U1.ch1+U1.ch2`.
 pub(super) fn parallel(board: &Board<'_>, group: &Group) -> Subject {
-    let names: Vec<String> = group.members.iter().map(|&(array, channel)| {
-        format!("{}.ch{}", board.arrays[array].refdes, board.arrays[array].channels[channel].index)
-    }).collect();
+    let names: Vec<String> = group
+        .members
+        .iter()
+        .map(|&(array, channel)| {
+            format!("{}.ch{}", board.arrays[array].refdes, board.arrays[array].channels[channel].index)
+        })
+        .collect();
     let mut refdes: Vec<String> = group.members.iter().map(|&(array, _)| board.arrays[array].refdes.clone()).collect();
     refdes.dedup();
     let name = names.join("+");
@@ -56,17 +66,28 @@ pub(super) fn parallel(board: &Board<'_>, group: &Group) -> Subject {
 /// A return path: `U1.emitter`.
 pub(super) fn return_path(site: &Site<'_>) -> Subject {
     let name = format!("{}.emitter", site.array.refdes);
-    Subject { scope: Scope::ReturnPath, place: name.clone(), name, refdes: vec![site.array.refdes.clone()], channel: None }
+    Subject {
+        scope: Scope::ReturnPath,
+        place: name.clone(),
+        name,
+        refdes: vec![site.array.refdes.clone()],
+        channel: None,
+    }
 }
 
 /// A driver: `net:RELAY_EN`. Its place is the array pins on it.
 pub(super) fn driver(board: &Board<'_>, net: Id<Net>) -> Subject {
-    let mut pins: Vec<String> = board.channels_at_input(net).iter().map(|&(array, channel)| {
-        let array = &board.arrays[array as usize];
-        format!("{}.ch{}", array.refdes, array.channels[channel as usize].index)
-    }).collect();
+    let mut pins: Vec<String> = board
+        .channels_at_input(net)
+        .iter()
+        .map(|&(array, channel)| {
+            let array = &board.arrays[array as usize];
+            format!("{}.ch{}", array.refdes, array.channels[channel as usize].index)
+        })
+        .collect();
     pins.sort_by(|a, b| natural(a, b));
-    let mut refdes: Vec<String> = board.channels_at_input(net).iter().map(|&(array, _)| board.arrays[array as usize].refdes.clone()).collect();
+    let mut refdes: Vec<String> =
+        board.channels_at_input(net).iter().map(|&(array, _)| board.arrays[array as usize].refdes.clone()).collect();
     refdes.sort_by(|a, b| natural(a, b));
     refdes.dedup();
     Subject {
@@ -84,7 +105,13 @@ pub(super) fn rail(board: &Board<'_>, nets: &[Id<Net>], arrays: &[String]) -> Su
     names.sort_by(|a, b| natural(a, b));
     let volts: Vec<String> = nets
         .iter()
-        .map(|&net| board.rails.rail(net).and_then(|rail| rail.level).map_or("?".to_owned(), |level| level.nominal.0.to_string()))
+        .map(|&net| {
+            board
+                .rails
+                .rail(net)
+                .and_then(|rail| rail.level)
+                .map_or("?".to_owned(), |level| level.nominal.0.to_string())
+        })
         .collect();
     Subject {
         scope: Scope::Rail,

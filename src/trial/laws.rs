@@ -131,7 +131,11 @@ impl Changed {
         let mut out = String::new();
         for line in notes.lines() {
             let line = line.trim();
-            let new = match line.strip_prefix('[').and_then(|rest| rest.strip_suffix(']')).and_then(|rest| rest.split_once('.')) {
+            let new = match line
+                .strip_prefix('[')
+                .and_then(|rest| rest.strip_suffix(']'))
+                .and_then(|rest| rest.split_once('.'))
+            {
                 Some((section, name)) if !line.starts_with("[[") => {
                     let bare = name.trim_matches('"');
                     let new = match section {
@@ -264,7 +268,8 @@ fn split_prefix(written: &str) -> (&str, &str) {
 
 /// Everything but definitions inside one subcircuit; rails and returns are its ports.
 fn wrapped(list: Vec<Piece>, text: &str) -> Vec<Piece> {
-    let ports: Vec<String> = net_names(text).into_iter().filter(|name| name != "0" && read(name) != NameSays::Signal).collect();
+    let ports: Vec<String> =
+        net_names(text).into_iter().filter(|name| name != "0" && read(name) != NameSays::Signal).collect();
     let (fixed, body): (Vec<Piece>, Vec<Piece>) = list.into_iter().partition(|piece| piece.fixed);
     let names = ports.join(" ");
     let piece = |text: String| Piece { text, fixed: true };

@@ -27,7 +27,11 @@ pub fn trials(only: Option<&str>) -> Vec<Trial> {
     let (cards, refused) = shelf();
     let mut trials: Vec<Trial> = refused
         .iter()
-        .map(|notice| Trial { card: String::new(), check: "every card is read".to_owned(), failures: vec![notice.message.clone()] })
+        .map(|notice| Trial {
+            card: String::new(),
+            check: "every card is read".to_owned(),
+            failures: vec![notice.message.clone()],
+        })
         .collect();
     let chosen: Vec<&Card> = cards.iter().filter(|card| only.is_none_or(|only| only == card.name)).collect();
     let made: Vec<Vec<Trial>> = chosen.par_iter().map(|card| trials_of(card)).collect();
@@ -102,11 +106,13 @@ fn expected(card: &Card, example: &Example, reviews: &[Review], subject: &dyn Fn
     let told: Vec<&Finding> = reviews.iter().flat_map(|review| &review.judged.findings).filter(of_card).collect();
     let held: Vec<&Finding> = reviews.iter().flat_map(|review| &review.judged.held).filter(of_card).collect();
     let names = |verdict: Verdict, list: &[&Finding]| {
-        let mut names: Vec<String> = list.iter().filter(|f| f.verdict == verdict).map(|f| f.subject.name.clone()).collect();
+        let mut names: Vec<String> =
+            list.iter().filter(|f| f.verdict == verdict).map(|f| f.subject.name.clone()).collect();
         names.sort();
         names
     };
-    let (broken, unproven, holds) = (names(Verdict::Broken, &told), names(Verdict::Unproven, &told), names(Verdict::Holds, &held));
+    let (broken, unproven, holds) =
+        (names(Verdict::Broken, &told), names(Verdict::Unproven, &told), names(Verdict::Holds, &held));
     let mut failures = Vec::new();
     let mut differs = |what: &str, got: &[String], wanted: &[String]| {
         if got != wanted {
@@ -140,7 +146,8 @@ fn expected(card: &Card, example: &Example, reviews: &[Review], subject: &dyn Fn
         Some(Verdict::NotApplicable) => {
             differs("broken", &broken, &[]);
             differs("unproven", &unproven, &[]);
-            let judged: Vec<String> = holds.into_iter().filter(|name| wanted.is_empty() || wanted.contains(name)).collect();
+            let judged: Vec<String> =
+                holds.into_iter().filter(|name| wanted.is_empty() || wanted.contains(name)).collect();
             differs("holds", &judged, &[]);
         }
         None => {}
@@ -162,7 +169,10 @@ fn crossfire(card: &Card, example: &Example, reviews: &[Review]) -> Vec<String> 
     let overlaps = |other: &str| {
         example.verdict == "broken"
             && (card.overlaps.iter().any(|name| name == other)
-                || cards.iter().find(|known| known.name == other).is_some_and(|known| known.overlaps.contains(&card.name)))
+                || cards
+                    .iter()
+                    .find(|known| known.name == other)
+                    .is_some_and(|known| known.overlaps.contains(&card.name)))
     };
     reviews
         .iter()

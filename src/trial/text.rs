@@ -16,9 +16,12 @@ pub(super) struct Piece {
 /// designator takes the base's place.
 pub(super) fn whole(example: &Example) -> String {
     let own = example.netlist.trim_start().to_owned();
-    let Some(base) = example.on.as_ref().and_then(|name| BASES.iter().find(|(stem, _)| stem == name)) else { return own };
+    let Some(base) = example.on.as_ref().and_then(|name| BASES.iter().find(|(stem, _)| stem == name)) else {
+        return own;
+    };
     let added = pieces(&format!("\n{own}")).1;
-    let designators: Vec<String> = added.iter().filter(|piece| !piece.fixed).map(|piece| first_word(&piece.text)).collect();
+    let designators: Vec<String> =
+        added.iter().filter(|piece| !piece.fixed).map(|piece| first_word(&piece.text)).collect();
     let (title, kept) = pieces(base.1.trim_start());
     let kept = kept.into_iter().filter(|piece| piece.fixed || !designators.contains(&first_word(&piece.text)));
     join(&title, &kept.chain(added).collect::<Vec<_>>())

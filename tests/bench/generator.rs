@@ -45,7 +45,9 @@ pub fn board(arrays: usize, seed: u64) -> Board {
             _ => "+12V".to_owned(),
         };
         let open = if mistake == 3 { chance.below(7) + 1 } else { 0 };
-        if let Some(card) = [None, Some("clamp-low-rail"), Some("inductive-unclamped"), Some("input-floating")][mistake as usize] {
+        if let Some(card) =
+            [None, Some("clamp-low-rail"), Some("inductive-unclamped"), Some("input-floating")][mistake as usize]
+        {
             board.mistakes.push((format!("U{array}"), card));
         }
         let _ = write!(out, "XU{array}");

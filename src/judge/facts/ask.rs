@@ -19,7 +19,9 @@ pub(crate) fn load(board: &Board<'_>, load: &Load) -> Question {
         Some(net) => format!("net:{}", board.circuit.net_name(net)),
         None => at.clone(),
     };
-    Question { answer: format!("[[loads]] at = \"{place}\", kind = \"…\", supply = \"…\""), at, asks: "what feeds it?" }
+    Question {
+        answer: format!("[[loads]] at = \"{place}\", kind = \"…\", supply = \"…\""), at, asks: "what feeds it?"
+    }
 }
 
 /// How many ohms has it? Asked of the type where the parts have one, so that one answer serves all of them.
@@ -27,7 +29,8 @@ pub(crate) fn load_ohms(board: &Board<'_>, load_: &Load) -> Question {
     if load_.behind.is_some() || load_.kind == LoadKind::Unknown {
         return load(board, load_);
     }
-    let unknown = load_.elements.iter().find(|&&element| board.winding_ohms(element).is_none()).or(load_.elements.first());
+    let unknown =
+        load_.elements.iter().find(|&&element| board.winding_ohms(element).is_none()).or(load_.elements.first());
     match unknown {
         Some(&element) => ohms(board, element),
         None => load(board, load_),
@@ -85,7 +88,11 @@ pub(crate) fn load_name(board: &Board<'_>, load: &Load) -> String {
 /// Are these two returns joined outside the board?
 pub(crate) fn returns_joined(board: &Board<'_>, a: Id<Net>, b: Id<Net>) -> Question {
     let (a, b) = (board.circuit.net_name(a), board.circuit.net_name(b));
-    Question { at: format!("{a} and {b}"), asks: "joined outside the board?", answer: format!("[[ties]] nets = [\"{a}\", \"{b}\"]") }
+    Question {
+        at: format!("{a} and {b}"),
+        asks: "joined outside the board?",
+        answer: format!("[[ties]] nets = [\"{a}\", \"{b}\"]"),
+    }
 }
 
 /// Which logic family drives the inputs of this array?

@@ -39,7 +39,8 @@ impl Clamp {
         let names: Vec<String> = clamps.iter().map(|pin| board.circuit.net_name(pin.net)).collect();
         let loads = || site.channels.iter().flat_map(|channel| &channel.hanging.loads);
         let series = clamps.iter().find_map(|pin| Series::of(site, pin.net));
-        let current: Option<f64> = loads().filter(|load| load.kind.is_inductive() == Some(true)).map(|load| amps(board, load)).sum();
+        let current: Option<f64> =
+            loads().filter(|load| load.kind.is_inductive() == Some(true)).map(|load| amps(board, load)).sum();
         let ohms = series.as_ref().map_or(Some(0.0), |series| series.ohms);
         Self {
             has_clamp: Fact::flag(!clamps.is_empty()),
@@ -51,8 +52,10 @@ impl Clamp {
             clamp_can_open: Fact::flag(series.as_ref().is_some_and(|series| series.can_open)),
             clamp_series: Fact::flag(series.is_some()).at(site.array.span, "the array"),
             clamp_extra: match (ohms, current) {
-                (Some(ohms), Some(current)) => Fact::number(ohms * current)
-                    .formula("resistance x sum of the coils' currents", &[("resistance", ohms, "ohm"), ("current", current, "A")]),
+                (Some(ohms), Some(current)) => Fact::number(ohms * current).formula(
+                    "resistance x sum of the coils' currents",
+                    &[("resistance", ohms, "ohm"), ("current", current, "A")],
+                ),
                 (Some(0.0), None) => Fact::number(0.0),
                 _ => unknown_current(site),
             },
@@ -83,7 +86,12 @@ impl Series {
         }
         let found = board.connectivity.paths(
             clamp,
-            |link, _| matches!(link.kind, LinkKind::Wire | LinkKind::Resistor(_) | LinkKind::Ferrite | LinkKind::Fuse | LinkKind::Jumper),
+            |link, _| {
+                matches!(
+                    link.kind,
+                    LinkKind::Wire | LinkKind::Resistor(_) | LinkKind::Ferrite | LinkKind::Fuse | LinkKind::Jumper
+                )
+            },
             |net| if matches!(board.rails.role(net), Role::Rail(_)) { At::End } else { At::On },
         );
         let path = found.found.iter().filter(|path| !path.dead_end).min_by_key(|path| path.hops.len())?;
@@ -115,13 +123,14 @@ fn on_return(site: &Site<'_>, clamps: &[&ArrayPin]) -> Fact {
     for pin in clamps {
         let reach = board.connectivity.reach(
             pin.net,
-            |link, _| link.kind.is_low_resistance() || matches!(link.kind, LinkKind::Resistor(Some(ohms)) if ohms.0 <= SMALL_OHMS),
+            |link, _| {
+                link.kind.is_low_resistance()
+                    || matches!(link.kind, LinkKind::Resistor(Some(ohms)) if ohms.0 <= SMALL_OHMS)
+            },
             |net| if board.rails.is_signal(net) { At::On } else { At::End },
         );
         if let Some(&net) = reach.nets.iter().find(|&&net| board.rails.is_return(net)) {
-            return Fact::flag(true)
-                .at(site.array.span, "clamp pin")
-                .at(board.circuit.nets[net].span, "the return");
+            return Fact::flag(true).at(site.array.span, "clamp pin").at(board.circuit.nets[net].span, "the return");
         }
     }
     Fact::flag(false)

@@ -53,9 +53,12 @@ impl Drive {
                 Some(emitter) => return_joined(site, &references, emitter),
                 None => Fact::flag(true),
             },
-            safety: Fact::flag(site.channels.iter().filter(|c| c.channel.inputs.iter().any(|pin| board.connectivity.same(pin.net, net))).any(|channel| {
-                channel.loads().any(|(load, _)| supply::is_safety(site, channel, load))
-            })),
+            safety: Fact::flag(
+                site.channels
+                    .iter()
+                    .filter(|c| c.channel.inputs.iter().any(|pin| board.connectivity.same(pin.net, net)))
+                    .any(|channel| channel.loads().any(|(load, _)| supply::is_safety(site, channel, load))),
+            ),
         }
     }
 }
@@ -73,9 +76,16 @@ fn is_strong(board: &Board<'_>, driver: &Driver) -> bool {
 
 fn driver_name(board: &Board<'_>, driver: &Driver) -> String {
     match driver.kind {
-        DriverKind::PushPull(pin) | DriverKind::OpenDrain(pin) | DriverKind::MayDrive(pin) | DriverKind::Connector(pin) => board.pin_name(pin),
-        DriverKind::Source(element) | DriverKind::Switch(element) | DriverKind::Transistor(element) => board.circuit.refdes(element),
-        DriverKind::Channel(array, channel) => format!("{}.ch{}", board.arrays[array].refdes, board.arrays[array].channels[channel].index),
+        DriverKind::PushPull(pin)
+        | DriverKind::OpenDrain(pin)
+        | DriverKind::MayDrive(pin)
+        | DriverKind::Connector(pin) => board.pin_name(pin),
+        DriverKind::Source(element) | DriverKind::Switch(element) | DriverKind::Transistor(element) => {
+            board.circuit.refdes(element)
+        }
+        DriverKind::Channel(array, channel) => {
+            format!("{}.ch{}", board.arrays[array].refdes, board.arrays[array].channels[channel].index)
+        }
         DriverKind::Rail | DriverKind::Return | DriverKind::Port => board.circuit.net_name(driver.net),
     }
 }

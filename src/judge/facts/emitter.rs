@@ -100,11 +100,20 @@ fn emitter_above(site: &Site<'_>, emitters: &[&ArrayPin]) -> (Fact, Option<Id<Ne
     for pin in emitters {
         let near = direct(board, pin.net, LinkKind::is_low_resistance);
         let far = direct(board, pin.net, |kind| {
-            !kind.is_load() && !matches!(kind, LinkKind::Capacitor | LinkKind::Control | LinkKind::Source(_) | LinkKind::Suppressor(_))
+            !kind.is_load()
+                && !matches!(
+                    kind,
+                    LinkKind::Capacitor | LinkKind::Control | LinkKind::Source(_) | LinkKind::Suppressor(_)
+                )
         });
-        let rail_of = |reach: &Reach| reach.nets.iter().copied().find(|&net| is_positive(board, net) && !is_loads_return(site, net));
+        let rail_of = |reach: &Reach| {
+            reach.nets.iter().copied().find(|&net| is_positive(board, net) && !is_loads_return(site, net))
+        };
         let on_return = |reach: &Reach| {
-            reach.nets.iter().any(|&net| !board.rails.is_signal(net) && (!is_positive(board, net) || is_loads_return(site, net)))
+            reach
+                .nets
+                .iter()
+                .any(|&net| !board.rails.is_signal(net) && (!is_positive(board, net) || is_loads_return(site, net)))
         };
         let rail = match (rail_of(&near), rail_of(&far)) {
             (Some(rail), _) if !on_return(&near) => Some(rail),
@@ -116,7 +125,8 @@ fn emitter_above(site: &Site<'_>, emitters: &[&ArrayPin]) -> (Fact, Option<Id<Ne
             (_, far_rail) => far_rail,
         };
         if let Some(rail) = rail {
-            let fact = Fact::flag(true).at(site.array.span, "emitter pin").at(board.circuit.nets[rail].span, "a supply net");
+            let fact =
+                Fact::flag(true).at(site.array.span, "emitter pin").at(board.circuit.nets[rail].span, "a supply net");
             return (fact, Some(rail));
         }
     }

@@ -33,7 +33,9 @@ impl Input {
         Self {
             name: Fact::text(format!("{}.ch{}", site.array.refdes, channel.channel.index)),
             has_input: Fact::flag(!channel.channel.inputs.is_empty()),
-            input_net: Fact::text(channel.channel.inputs.first().map_or(String::new(), |pin| board.circuit.net_name(pin.net))),
+            input_net: Fact::text(
+                channel.channel.inputs.first().map_or(String::new(), |pin| board.circuit.net_name(pin.net)),
+            ),
             input_driven: driven(site, channel),
             open_input: Fact::text(open_name(open)),
             open_input_words: Fact::text(open_words(open)),

@@ -54,7 +54,8 @@ pub(crate) fn array(site: &Site<'_>, doubt: Option<&str>) -> Vec<Fact> {
     spare::Spare::of(site).into_slots(&mut slots);
     if let Some(reason) = doubt {
         for (row, slot) in slots.iter_mut().enumerate() {
-            let of_record = record::Record::DEFS.get(row).is_some_and(|def| record::STANDS_IN_DOUBT.contains(&def.field));
+            let of_record =
+                record::Record::DEFS.get(row).is_some_and(|def| record::STANDS_IN_DOUBT.contains(&def.field));
             if !of_record {
                 *slot = Fact::reason(reason, Some(site.array.span));
             }

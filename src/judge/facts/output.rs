@@ -74,7 +74,9 @@ fn tied(site: &Site<'_>, channel: &ChannelSite<'_>, wanted: fn(End) -> Option<Id
     let net = bare.filter_map(|branch| wanted(branch.end)).next();
     match net {
         Some(net) => {
-            let fact = Fact::flag(true).at(site.array.span, "the array").at(board.circuit.nets[net].span, "tied to its output");
+            let fact = Fact::flag(true)
+                .at(site.array.span, "the array")
+                .at(board.circuit.nets[net].span, "tied to its output");
             (fact, Some(net))
         }
         None => match ask::unread(board, output) {
@@ -123,12 +125,12 @@ fn driver(site: &Site<'_>, channel: &ChannelSite<'_>) -> Option<Driver> {
         return Some(Driver { name: board.pin_name(pin), ohms: ohms.map(|ohms| ohms.0), place });
     }
     branches.iter().find_map(|branch| {
-        let moving = branch.links(board).find(|(link, _)| {
-            matches!(link.kind, LinkKind::Source(Some((low, high))) if high.0 - low.0 > 1e-3)
-        })?;
-        let others = branch
+        let moving = branch
             .links(board)
-            .all(|(link, _)| link.element == moving.0.element || matches!(link.kind, LinkKind::Resistor(_) | LinkKind::Wire));
+            .find(|(link, _)| matches!(link.kind, LinkKind::Source(Some((low, high))) if high.0 - low.0 > 1e-3))?;
+        let others = branch.links(board).all(|(link, _)| {
+            link.element == moving.0.element || matches!(link.kind, LinkKind::Resistor(_) | LinkKind::Wire)
+        });
         others.then(|| Driver {
             name: board.circuit.refdes(moving.0.element),
             ohms: branch.resistance(board).map(|ohms| ohms.0),

@@ -43,13 +43,16 @@ impl Parallel {
         packages.dedup();
         let load_names: Vec<String> = loads.iter().map(|load| ask::load_name(board, load)).collect();
         Self {
-            names: Fact::texts(group.members.iter().map(names).collect()).at(board.circuit.nets[group.output].span, "joined here"),
+            names: Fact::texts(group.members.iter().map(names).collect())
+                .at(board.circuit.nets[group.output].span, "joined here"),
             outputs: Fact::number(group.members.len() as f64),
             wired_logic: Fact::flag(loads.is_empty()),
             inputs_joined: inputs_joined(board, group),
             input_nets: Fact::texts(input_nets(board, group)),
             packages: Fact::number(packages.len() as f64).at(site.array.span, "one of the packages"),
-            bipolar: Fact::flag(packages.iter().all(|&array| board.arrays[array].profile.array.kind == Kind::Darlington)),
+            bipolar: Fact::flag(
+                packages.iter().all(|&array| board.arrays[array].profile.array.kind == Kind::Darlington),
+            ),
             loads: Fact::text(if load_names.is_empty() { "no load".to_owned() } else { load_names.join(" and ") }),
             current: current(site, channel.loads().map(|(load, _)| load)),
             member_rating: member_rating(site),
@@ -62,9 +65,17 @@ fn inputs_joined(board: &Board<'_>, group: &Group) -> Fact {
     let drivers: Vec<Drivers> = group
         .members
         .iter()
-        .filter_map(|&(array, row)| board.arrays[array].channels[row].inputs.first().map(|pin| Drivers::of(board, pin.net)))
+        .filter_map(|&(array, row)| {
+            board.arrays[array].channels[row].inputs.first().map(|pin| Drivers::of(board, pin.net))
+        })
         .collect();
-    let always = board.noted.always_together(&group.members.iter().map(|&(a, c)| (board.arrays[a].refdes.as_str(), board.arrays[a].channels[c].index)).collect::<Vec<_>>());
+    let always = board.noted.always_together(
+        &group
+            .members
+            .iter()
+            .map(|&(a, c)| (board.arrays[a].refdes.as_str(), board.arrays[a].channels[c].index))
+            .collect::<Vec<_>>(),
+    );
     match parallel::inputs(board, group, &drivers) {
         _ if always => Fact::flag(true),
         Inputs::Joined => Fact::flag(true),
@@ -77,7 +88,9 @@ fn inputs_joined(board: &Board<'_>, group: &Group) -> Fact {
             }
             fact
         }
-        Inputs::Unknown => Fact::reason("the channels have no inputs of their own: who is on with whom is in the software", None),
+        Inputs::Unknown => {
+            Fact::reason("the channels have no inputs of their own: who is on with whom is in the software", None)
+        }
     }
 }
 

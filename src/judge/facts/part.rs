@@ -27,7 +27,8 @@ const CELL_NODES: usize = 6;
 impl Part {
     /// An array by type whose node count fits no pin map.
     pub(crate) fn without_roles(board: &Board<'_>, element: Id<Element>, profile: &Profile, why: NoRoles) -> Self {
-        let mut counts: Vec<usize> = profile.maps.iter().filter(|map| map.confirmed).map(|map| map.pins.len()).collect();
+        let mut counts: Vec<usize> =
+            profile.maps.iter().filter(|map| map.confirmed).map(|map| map.pins.len()).collect();
         counts.sort_unstable();
         counts.dedup();
         let place = board.circuit.elements[element].span;
@@ -35,7 +36,9 @@ impl Part {
             known: Fact::flag(true),
             fits: match why {
                 // So few nodes: a gate or one channel, its pins not named.
-                NoRoles::Count if board.circuit.pins(element).len() <= CELL_NODES => Fact::ask(super::ask::pins_of(board, element)),
+                NoRoles::Count if board.circuit.pins(element).len() <= CELL_NODES => {
+                    Fact::ask(super::ask::pins_of(board, element))
+                }
                 NoRoles::Count => Fact::flag(false).at(place, "this many nodes"),
                 NoRoles::NoMap => Fact::ask(super::ask::pins_of(board, element)),
             },

@@ -61,8 +61,12 @@ impl Path {
                 Some(share) => Fact::flag(true).at(board.circuit.elements[share.element].span, "carries both"),
                 None => Fact::flag(false),
             },
-            shared_by: Fact::text(worst.as_ref().map_or(String::new(), |(share, _)| board.circuit.refdes(share.element))),
-            shared_reference: Fact::text(worst.as_ref().map_or(String::new(), |(share, _)| board.circuit.net_name(share.reference))),
+            shared_by: Fact::text(
+                worst.as_ref().map_or(String::new(), |(share, _)| board.circuit.refdes(share.element)),
+            ),
+            shared_reference: Fact::text(
+                worst.as_ref().map_or(String::new(), |(share, _)| board.circuit.net_name(share.reference)),
+            ),
             allowance: allowance(site, worst.as_ref().map(|(share, _)| share.reference)),
             shift: match worst {
                 Some((_, shift)) => shift,
@@ -106,7 +110,8 @@ fn signal_ground(site: &Site<'_>, emitter: Option<Id<Net>>, negative: Option<Id<
     let Some(emitter) = emitter else { return Fact::flag(false) };
     let on_signal = board.rails.role(emitter) == NetRole::Return(ReturnKind::Signal);
     let elsewhere = negative.is_some_and(|negative| !board.connectivity.same(negative, emitter));
-    Fact::flag(on_signal && elsewhere && board.has_several_returns()).at(board.circuit.nets[emitter].span, "the emitter pin's net")
+    Fact::flag(on_signal && elsewhere && board.has_several_returns())
+        .at(board.circuit.nets[emitter].span, "the emitter pin's net")
 }
 
 fn shares(site: &Site<'_>, emitter: Id<Net>, negative: Id<Net>) -> Vec<Shared> {
@@ -161,7 +166,9 @@ fn allowance(site: &Site<'_>, reference: Option<Id<Net>>) -> Fact {
     let family = inputs().find_map(|pin| site.driver_family(pin.net));
     match family.and_then(|name| board.library.levels(name)) {
         Some(levels) => match levels.low_out.iter().map(|point| point.level.at(levels.supply_v).0).reduce(f64::max) {
-            Some(low_out) => Fact::number(levels.low_in.at(levels.supply_v).0 - low_out).source(levels.low_in.from.text()),
+            Some(low_out) => {
+                Fact::number(levels.low_in.at(levels.supply_v).0 - low_out).source(levels.low_in.from.text())
+            }
             None => Fact::reason("the family's levels give no noise margin", None),
         },
         None => Fact::ask(ask::driver_family(site, reference)),

@@ -58,7 +58,9 @@ impl Supply {
             partial: Fact::flag(board.is_partial()),
             joined: Fact::flag(other.is_some()),
             joined_to: Fact::text(other.map_or(String::new(), |joint| board.circuit.net_name(joint.other))),
-            joined_by: Fact::text(other.and_then(|joint| joint.by).map_or("wire".to_owned(), |element| board.circuit.refdes(element))),
+            joined_by: Fact::text(
+                other.and_then(|joint| joint.by).map_or("wire".to_owned(), |element| board.circuit.refdes(element)),
+            ),
             joined_apart: match other {
                 Some(joint) => joint.apart(board, rail),
                 None => Fact::number(0.0),
@@ -83,9 +85,10 @@ fn is_bypassed(board: &Board<'_>, rail: Id<Net>) -> bool {
         |net| if board.rails.is_return(net) { At::End } else { At::On },
     );
     near.nets.iter().filter(|&&net| !board.rails.is_return(net)).any(|&net| {
-        board.connectivity.hops(net).any(|hop| {
-            board.connectivity.link(hop.link).kind == LinkKind::Capacitor && board.rails.is_return(hop.to)
-        })
+        board
+            .connectivity
+            .hops(net)
+            .any(|hop| board.connectivity.link(hop.link).kind == LinkKind::Capacitor && board.rails.is_return(hop.to))
     })
 }
 

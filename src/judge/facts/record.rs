@@ -60,7 +60,8 @@ impl Record {
         let (board, array) = (site.board, site.array);
         let supply = array.pins.iter().find(|pin| pin.role == Role::Supply);
         let controls = controls(site);
-        let open: Vec<&str> = controls.iter().filter(|(_, drivers)| !drivers.any()).map(|(pin, _)| control_name(pin)).collect();
+        let open: Vec<&str> =
+            controls.iter().filter(|(_, drivers)| !drivers.any()).map(|(pin, _)| control_name(pin)).collect();
         let limits = array.profile.supply.as_ref();
         let limit = |value: Option<(f64, String)>| match value {
             Some((value, source)) => Fact::number(value).source(source),
@@ -72,7 +73,8 @@ impl Record {
             profile: Fact::text(array.profile.name()),
             pins_from: Fact::text(array.pins_from.name()),
             pins_by_order: Fact::flag(array.pins_from == PinsFrom::PinNumbers).at(array.span, "the array"),
-            pins_make_sense: Fact::flag(array.sanity == Sanity::Passes || pins_confirmed(site)).at(array.span, "the array"),
+            pins_make_sense: Fact::flag(array.sanity == Sanity::Passes || pins_confirmed(site))
+                .at(array.span, "the array"),
             pins_swapped: Fact::flag(matches!(array.sanity, Sanity::Explained(_)) && !pins_confirmed(site))
                 .at(array.span, "the array"),
             pins_doubt: Fact::text(doubt(site)),
@@ -84,16 +86,24 @@ impl Record {
                 Some(pin) => supply_volts(site, pin),
                 None => Fact::reason("the part has no supply pin of its own", None),
             },
-            supply_least: limit(limits.and_then(|l| l.min_v.highest(None)).map(|s| (s.value.0, s.from.text().to_owned()))),
-            supply_most: limit(limits.and_then(|l| l.max_v.lowest(None)).map(|s| (s.value.0, s.from.text().to_owned()))),
-            supply_absolute: limit(limits.and_then(|l| l.absolute_v.lowest(None)).map(|s| (s.value.0, s.from.text().to_owned()))),
+            supply_least: limit(
+                limits.and_then(|l| l.min_v.highest(None)).map(|s| (s.value.0, s.from.text().to_owned())),
+            ),
+            supply_most: limit(
+                limits.and_then(|l| l.max_v.lowest(None)).map(|s| (s.value.0, s.from.text().to_owned())),
+            ),
+            supply_absolute: limit(
+                limits.and_then(|l| l.absolute_v.lowest(None)).map(|s| (s.value.0, s.from.text().to_owned())),
+            ),
             has_controls: Fact::flag(!controls.is_empty()),
             control_open: control_open(site, &controls),
             controls_open: Fact::text(open.join(" and ")),
             held_off: held_off(site, &controls),
-            safety: Fact::flag(site.channels.iter().any(|channel| {
-                channel.loads().any(|(load, _)| super::supply::is_safety(site, channel, load))
-            })),
+            safety: Fact::flag(
+                site.channels
+                    .iter()
+                    .any(|channel| channel.loads().any(|(load, _)| super::supply::is_safety(site, channel, load))),
+            ),
         }
     }
 }
@@ -120,14 +130,18 @@ fn doubt(site: &Site<'_>) -> String {
     let (inputs, outputs) = (side(|role| matches!(role, Role::Input(_))), side(|role| matches!(role, Role::Output(_))));
     match array.sanity {
         Sanity::Explained(WrongMap::StraightOrder) => {
-            return format!("net names of the same number meet only that way (inputs {inputs}, …, outputs {outputs}, …)");
+            return format!(
+                "net names of the same number meet only that way (inputs {inputs}, …, outputs {outputs}, …)"
+            );
         }
         Sanity::Explained(WrongMap::Mirrored) => {
             return format!("loads hang on its inputs ({inputs}), and what drives is at its outputs ({outputs})");
         }
         _ => {}
     }
-    let at = |what: &str, pin: &ArrayPin| format!("its {what} {} is on {}", board.pin_words(pin.pin), board.circuit.net_name(pin.net));
+    let at = |what: &str, pin: &ArrayPin| {
+        format!("its {what} {} is on {}", board.pin_words(pin.pin), board.circuit.net_name(pin.net))
+    };
     let emitter = array.emitters().next().map(|pin| at("emitter", pin));
     let clamp = array.clamps().next().map(|pin| at("clamp", pin));
     let none = if array.sanity == Sanity::Undecided { ", which is no return that the netlist shows" } else { "" };
@@ -198,7 +212,8 @@ fn control_open(site: &Site<'_>, controls: &[(ArrayPin, Drivers)]) -> Fact {
 fn held_off(site: &Site<'_>, controls: &[(ArrayPin, Drivers)]) -> Fact {
     let find = |wanted: Control| controls.iter().find(|(pin, _)| pin.role == Role::Control(wanted));
     let held = |drivers: &Drivers| {
-        drivers.active().next().is_some() || drivers.list.iter().any(|d| d.kind == DriverKind::Rail && d.ohms.is_some_and(|o| o.0 > 0.0))
+        drivers.active().next().is_some()
+            || drivers.list.iter().any(|d| d.kind == DriverKind::Rail && d.ohms.is_some_and(|o| o.0 > 0.0))
     };
     let enable = find(Control::EnableN).is_some_and(|(_, drivers)| held(drivers));
     let clear = find(Control::ClearN).is_some_and(|(pin, drivers)| {
@@ -209,6 +224,7 @@ fn held_off(site: &Site<'_>, controls: &[(ArrayPin, Drivers)]) -> Fact {
 
 fn has_capacitor(board: &Board<'_>, net: Id<Net>) -> bool {
     board.connectivity.hops(net).any(|hop| {
-        board.connectivity.link(hop.link).kind == crate::connect::link::LinkKind::Capacitor && board.rails.is_return(hop.to)
+        board.connectivity.link(hop.link).kind == crate::connect::link::LinkKind::Capacitor
+            && board.rails.is_return(hop.to)
     })
 }

@@ -5,9 +5,9 @@ use crate::circuit::model::{Element, Net};
 use crate::connect::graph::Hop;
 use crate::connect::link::{Link, LinkKind};
 use crate::judge::fact::{Fact, facts};
+use crate::parts::family::FamilyKind;
 use crate::recognise::branch::{Branch, End};
 use crate::recognise::cut::cut_of;
-use crate::parts::family::FamilyKind;
 use crate::recognise::load::{Load, LoadKind, Supply};
 use crate::recognise::site::{ChannelSite, Site};
 use crate::recognise::turn_off::Ways;
@@ -42,9 +42,10 @@ impl Feed {
     pub(crate) fn of(site: &Site<'_>, channel: &ChannelSite<'_>, load: &Load, ways: &Ways) -> Self {
         let board = site.board;
         let cut = cut_of(board, site.array, channel.channel, &channel.hanging, load, ways);
-        let led = load.branches.iter().any(|&row| {
-            channel.hanging.branches.list[row].any(board, |kind| kind == LinkKind::Led)
-        });
+        let led = load
+            .branches
+            .iter()
+            .any(|&row| channel.hanging.branches.list[row].any(board, |kind| kind == LinkKind::Led));
         let shared = Shared::of(site, channel, load);
         let blocking = blocking_led(site, channel, load);
         Self {
@@ -52,7 +53,9 @@ impl Feed {
             drawn: Fact::flag(load.behind.is_none() && !load.branches.is_empty() && load.kind != LoadKind::Nothing),
             to_return: to_return(site, channel, load),
             fed: fed(site, load),
-            fed_blocked: Fact::text(blocked_by(site, channel, load).map_or(String::new(), |element| board.circuit.refdes(element))),
+            fed_blocked: Fact::text(
+                blocked_by(site, channel, load).map_or(String::new(), |element| board.circuit.refdes(element)),
+            ),
             far_end: Fact::text(far_end(site, channel, load).map_or(String::new(), |net| board.circuit.net_name(net))),
             led: Fact::flag(led),
             led_limited: led_limited(site, channel, load),
@@ -147,11 +150,14 @@ fn led_limited(site: &Site<'_>, channel: &ChannelSite<'_>, load: &Load) -> Fact 
         }
         let name = board.circuit.refdes(led);
         if family(led) == Some(FamilyKind::SolidStateRelay) {
-            return Fact::reason(format!("{name} is a solid-state relay: some have their own resistor"), Some(board.circuit.elements[led].span));
+            return Fact::reason(
+                format!("{name} is a solid-state relay: some have their own resistor"),
+                Some(board.circuit.elements[led].span),
+            );
         }
-        let perhaps = branch.links(board).find(|(link, _)| {
-            matches!(link.kind, LinkKind::Transistor | LinkKind::Unknown | LinkKind::Source(None))
-        });
+        let perhaps = branch
+            .links(board)
+            .find(|(link, _)| matches!(link.kind, LinkKind::Transistor | LinkKind::Unknown | LinkKind::Source(None)));
         if let Some((link, _)) = perhaps {
             let element = &board.circuit.elements[link.element];
             let part = board.circuit.refdes(link.element);
@@ -177,12 +183,15 @@ fn far_end(site: &Site<'_>, channel: &ChannelSite<'_>, load: &Load) -> Option<Id
 /// The diode that stands against the current from a rail into the load.
 fn blocked_by(site: &Site<'_>, channel: &ChannelSite<'_>, load: &Load) -> Option<Id<Element>> {
     let Supply::None(_) = load.supply else { return None };
-    load.branches.iter().map(|&row| &channel.hanging.branches.list[row]).filter(|branch| matches!(branch.end, End::Rail(_))).find_map(
-        |branch| {
-            let against = |(link, forward): &(&Link, bool)| !link.kind.passes_dc(!forward) && link.kind != LinkKind::Capacitor;
+    load.branches
+        .iter()
+        .map(|&row| &channel.hanging.branches.list[row])
+        .filter(|branch| matches!(branch.end, End::Rail(_)))
+        .find_map(|branch| {
+            let against =
+                |(link, forward): &(&Link, bool)| !link.kind.passes_dc(!forward) && link.kind != LinkKind::Capacitor;
             branch.links(site.board).find(against).map(|(link, _)| link.element)
-        },
-    )
+        })
 }
 
 fn led_of(site: &Site<'_>, branch: &Branch) -> Option<Id<Element>> {
@@ -206,8 +215,12 @@ impl Shared {
             let mut with: Vec<(usize, usize)> = branches
                 .iter()
                 .filter(|other| other.elements(board).contains(&led))
-                .filter(|other| other.links(board).all(|(link, _)| link.kind == LinkKind::Led || link.kind.is_low_resistance()))
-                .filter_map(|other| if let End::Output(array, channel) = other.end { Some((array, channel)) } else { None })
+                .filter(|other| {
+                    other.links(board).all(|(link, _)| link.kind == LinkKind::Led || link.kind.is_low_resistance())
+                })
+                .filter_map(
+                    |other| if let End::Output(array, channel) = other.end { Some((array, channel)) } else { None },
+                )
                 .collect();
             with.sort_unstable();
             with.dedup();
@@ -236,7 +249,10 @@ impl Shared {
     fn one_at_a_time(&self, site: &Site<'_>, channel: &ChannelSite<'_>) -> bool {
         let arrays = &site.board.arrays;
         let mine = (site.array.refdes.as_str(), channel.channel.index);
-        let others = self.with.iter().map(|&(array, channel)| (arrays[array].refdes.as_str(), arrays[array].channels[channel].index));
+        let others = self
+            .with
+            .iter()
+            .map(|&(array, channel)| (arrays[array].refdes.as_str(), arrays[array].channels[channel].index));
         site.board.noted.one_at_a_time(&std::iter::once(mine).chain(others).collect::<Vec<_>>())
     }
 }

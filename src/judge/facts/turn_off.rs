@@ -111,7 +111,9 @@ fn turn_off_path(site: &Site<'_>, channel: &ChannelSite<'_>, ways: &Ways) -> Fac
             None => fact,
         };
     } else if let Some(way) = ways.list.first() {
-        let (Target::Perhaps(net) | Target::Rail(net) | Target::Return(net)) = way.target else { return Fact::flag(true) };
+        let (Target::Perhaps(net) | Target::Rail(net) | Target::Return(net)) = way.target else {
+            return Fact::flag(true);
+        };
         Fact::ask(ask::where_leads(board, net))
     } else if let Some(unread) = unread_near(site, channel) {
         unread
@@ -128,7 +130,11 @@ fn turn_off_path(site: &Site<'_>, channel: &ChannelSite<'_>, ways: &Ways) -> Fac
 
 fn unread_near(site: &Site<'_>, channel: &ChannelSite<'_>) -> Option<Fact> {
     let clamp = site.array.clamp_of(channel.channel).map(|pin| pin.net);
-    [Some(channel.output()), clamp].into_iter().flatten().find_map(|net| ask::unread(site.board, net)).map(|gap| Fact::default().gap(gap))
+    [Some(channel.output()), clamp]
+        .into_iter()
+        .flatten()
+        .find_map(|net| ask::unread(site.board, net))
+        .map(|gap| Fact::default().gap(gap))
 }
 
 /// The level at which the clamp pin holds the output: its rail and the zeners on the way.
@@ -236,7 +242,10 @@ fn bypass(site: &Site<'_>, channel: &ChannelSite<'_>, load: &Load) -> (Fact, Fac
         };
         if let (true, Some(&element)) = (light, branch.elements(board).first()) {
             let place = board.circuit.elements[element].span;
-            return (Fact::flag(true).at(place, "conducts while the channel is on"), Fact::text(board.circuit.refdes(element)));
+            return (
+                Fact::flag(true).at(place, "conducts while the channel is on"),
+                Fact::text(board.circuit.refdes(element)),
+            );
         }
     }
     (Fact::flag(false), Fact::text("nothing"))
@@ -293,7 +302,11 @@ pub(crate) fn gaps_of(from: &[&Fact]) -> Fact {
     for gap in from.iter().filter_map(|fact| fact.because.as_ref()).flat_map(|because| because.gaps.iter()) {
         fact = fact.gap(gap.clone());
     }
-    if fact.because.is_none() { fact.gap(Gap::Reason("a number behind it is not known".to_owned(), None)) } else { fact }
+    if fact.because.is_none() {
+        fact.gap(Gap::Reason("a number behind it is not known".to_owned(), None))
+    } else {
+        fact
+    }
 }
 
 /// The clamp pin's own net for a load, where the array has one.

@@ -32,11 +32,8 @@ fn known(board: &Board<'_>, rail: &Rail, level: Level) -> Fact {
         return Fact::interval(Interval { low: level.low.0, nominal: level.nominal.0, high: level.high.0 });
     }
     let spread = |volts: f64, sign: f64| volts + sign * volts.abs() * RAIL_TOLERANCE;
-    let interval = Interval {
-        low: spread(level.low.0, -1.0),
-        nominal: level.nominal.0,
-        high: spread(level.high.0, 1.0),
-    };
+    let interval =
+        Interval { low: spread(level.low.0, -1.0), nominal: level.nominal.0, high: spread(level.high.0, 1.0) };
     let name = board.circuit.net_name(rail.net);
     let evidence = match level.origin {
         Origin::Name => "read from the net's name",
