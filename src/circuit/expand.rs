@@ -10,6 +10,7 @@ use super::params::{Env, Evaluator};
 use super::plan::Plan;
 use super::program::{Definition, ModelLine, Program, Scope};
 use super::remarks::Remarks;
+use super::suggest::COMPARED;
 use super::template::{Local, Part, Shared, Tail, Template};
 use crate::base::names::Name;
 use crate::base::notice::{Notice, Severity};
@@ -25,6 +26,9 @@ pub(crate) struct Expanded {
     /// What was noticed on the way.
     pub notices: Vec<Notice>,
 }
+
+/// Names compared for "did you mean" in all boards of one program together.
+const SUGGESTIONS: usize = 1_000_000;
 
 /// What is a board of its own in a program.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -98,6 +102,7 @@ fn expanded<'a>(
         blocks: HashMap::new(),
         gnd: None,
         gnd_span: None,
+        alone: board == Board::Top,
         remarks: Remarks::default(),
     };
     expander.reserve(row.elements);
@@ -122,6 +127,8 @@ pub(super) struct Expander<'a> {
     /// What `gnd` is, once it was met.
     pub(super) gnd: Option<Id<Net>>,
     pub(super) gnd_span: Option<Span>,
+    /// It is the only board of its program.
+    pub(super) alone: bool,
     pub(super) remarks: Remarks,
 }
 
@@ -309,10 +316,11 @@ impl<'a> Expander<'a> {
             let more = self.plan.problem_count - notices.len();
             notices.push(Notice::general(Severity::Warning, format!("{more} more lines could not be read as a part")));
         }
-        notices.extend(remarks.notices(
-            || program.definitions().map(|(_, definition)| program.names.text(definition.name)),
-            || program.models.iter().map(|(_, model)| program.names.text(model.name)),
-        ));
+        // A file of many boards asks for each of them: the work stays within that of a few hundred boards.
+        let compared = if self.alone { COMPARED } else { SUGGESTIONS / program.definitions.len().max(1) };
+        let definitions = || program.definitions().map(|(_, own)| program.names.text(own.name)).take(compared);
+        let models = || program.models.iter().map(|(_, model)| program.names.text(model.name)).take(compared);
+        notices.extend(remarks.notices(definitions, models));
         if let Some(span) = self.gnd_span {
             notices.push(match self.plan.between_grounds {
                 None => Notice::at(Severity::Note, span, "GND is taken as node 0"),

@@ -33,7 +33,7 @@ pub(super) fn split<'a>(file: FileId, words: &[Word], text: impl Fn(Word) -> &'a
     let mut header = Header { name: text(name), ..Header::default() };
     let mut values = vec![None; rest.len()];
     let mut in_value = vec![false; rest.len()];
-    for (key, value) in pairs(rest) {
+    for (key, value) in pairs(rest, |at| rest.get(at).is_some_and(|&word| keyword(word, text(word)).0.is_some())) {
         in_value[key..value.end].fill(true);
         values[key] = Some(value);
     }
@@ -83,8 +83,9 @@ pub(super) fn span(file: FileId, words: &[Word], range: Range<usize>) -> Span {
     Span::new(file, first, last.map_or(first, |word| (word.start + word.len) as usize))
 }
 
-/// The `key=value` pairs among `words`: the key's index, and the indices of the value, which ends before the next key.
-fn pairs(words: &[Word]) -> impl Iterator<Item = (usize, Range<usize>)> {
+/// The `key=value` pairs among `words`: the key's index, and the indices of the value, which ends before the next key
+/// or keyword.
+fn pairs(words: &[Word], keyword: impl Fn(usize) -> bool) -> impl Iterator<Item = (usize, Range<usize>)> {
     let equals = |at: usize| words.get(at).is_some_and(|word| word.form == WordForm::Equals);
     let mut at = 0;
     std::iter::from_fn(move || {
@@ -94,10 +95,44 @@ fn pairs(words: &[Word]) -> impl Iterator<Item = (usize, Range<usize>)> {
         let key = (at < words.len()).then_some(at)?;
         let first = (key + 2).min(words.len());
         let mut end = first;
-        while end < words.len() && !equals(end + 1) && !equals(end) {
+        while end < words.len() && !equals(end + 1) && !equals(end) && !keyword(end) {
             end += 1;
         }
         at = end;
         Some((key, first..end))
     })
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::netlist;
+
+    #[track_caller]
+    fn check(line: &str, ports: &[&str], optional: &[(&str, &str)], defaults: &[(&str, &str)]) {
+        let text = format!("* parts\n{line}\n.ends\n");
+        let file = FileId(0);
+        let deck = netlist::read(file, &text);
+        let header = split(file, deck.words(&deck.statements[0]), |word| word.text(&text)).unwrap();
+        assert_eq!((header.name, &header.ports[..]), ("S", ports), "{line}");
+        assert_eq!(header.optional, optional, "{line}");
+        let value = |span: Span| &text[span.start as usize..span.end()];
+        let found: Vec<(&str, &str)> = header.defaults.iter().map(|&(key, span)| (key, value(span))).collect();
+        assert_eq!(found, defaults, "{line}");
+    }
+
+    #[test]
+    fn a_subckt_line_falls_into_ports_and_parameters() {
+        check(".subckt S a b", &["a", "b"], &[], &[]);
+        check(".SUBCKT S a b PARAMS: x=1 y={2*x}", &["a", "b"], &[], &[("x", "1"), ("y", "2*x")]);
+        check(".subckt S a b x = 1k", &["a", "b"], &[], &[("x", "1k")]);
+        check(".subckt S a\n+ b\n+ params:\n+ x=1", &["a", "b"], &[], &[("x", "1")]);
+        check(
+            ".subckt S a optional: P=$G_P N=$G_N params: d=0 text: level=2",
+            &["a"],
+            &[("P", "$G_P"), ("N", "$G_N")],
+            &[("d", "0")],
+        );
+        check(".subckt S B[1] C<2> +12V 0 NC", &["B[1]", "C<2>", "+12V", "0", "NC"], &[], &[]);
+    }
 }

@@ -1,15 +1,15 @@
 //! "Did you mean": the closest of the user's own names.
 
-/// How many names are compared at most, so that many misspelled names in a large file stay cheap.
-const COMPARED: usize = 2_000;
+/// How many names one misspelled name is compared with at most.
+pub(super) const COMPARED: usize = 2_000;
 
-/// The name among `names` that is closest to `word`, if one is close: one edit in three letters.
+/// The first name among `names` that is closest to `word`, if one is close: one edit in three letters.
 pub(super) fn closest<'a>(word: &str, names: impl Iterator<Item = &'a str>) -> Option<&'a str> {
     let folded = word.to_ascii_lowercase();
     let allowed = (word.chars().count() / 3).min(3);
     names
-        .filter(|name| name.len().abs_diff(word.len()) <= allowed && name.len() < 64)
         .take(COMPARED)
+        .filter(|name| name.len().abs_diff(word.len()) <= allowed && name.len() < 64)
         .map(|name| (strsim::osa_distance(&folded, &name.to_ascii_lowercase()), name))
         .filter(|&(distance, _)| distance <= allowed)
         .min_by_key(|&(distance, _)| distance)

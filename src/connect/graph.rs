@@ -3,6 +3,7 @@
 use petgraph::graph::{EdgeIndex, NodeIndex, UnGraph};
 use petgraph::unionfind::UnionFind;
 use petgraph::visit::EdgeRef;
+use rustc_hash::FxHashMap;
 
 use crate::base::table::{Id, Table};
 use crate::circuit::model::{Circuit, Element, Net};
@@ -26,6 +27,9 @@ pub(crate) struct Connectivity {
     pin_starts: Vec<u32>,
     pins: Vec<Pin>,
     joined: Vec<u32>,
+    /// For the nets that a wire ends at: the nets at the wires' other ends. Few nets have one, supply nets have many
+    /// links, so wires are looked up here and not among all links.
+    wires: FxHashMap<Id<Net>, Vec<Id<Net>>>,
 }
 
 /// A link as seen from one of its nets.
@@ -49,16 +53,19 @@ impl Connectivity {
         }
         let mut joined = UnionFind::<u32>::new(nets);
         let mut table = Table::new();
+        let mut wires: FxHashMap<Id<Net>, Vec<Id<Net>>> = FxHashMap::default();
         for link in links {
             // Edge and link rows are added together, so that one number serves for both.
             graph.add_edge(node(link.from), node(link.to), ());
             if link.kind == LinkKind::Wire {
+                wires.entry(link.from).or_default().push(link.to);
+                wires.entry(link.to).or_default().push(link.from);
                 joined.union(link.from.index() as u32, link.to.index() as u32);
             }
             table.push(link);
         }
         let (pin_starts, pins) = pins_by_net(circuit);
-        Self { links: table, graph, pin_starts, pins, joined: joined.into_labeling() }
+        Self { links: table, graph, pin_starts, pins, joined: joined.into_labeling(), wires }
     }
 
     /// The link `id`.
@@ -107,9 +114,9 @@ impl Connectivity {
         let mut nets = vec![net];
         let mut at = 0;
         while let Some(&here) = nets.get(at) {
-            for hop in self.hops(here) {
-                if self.links[hop.link].kind == LinkKind::Wire && !nets.contains(&hop.to) {
-                    nets.push(hop.to);
+            for &other in self.wires.get(&here).map_or(&[][..], Vec::as_slice) {
+                if !nets.contains(&other) {
+                    nets.push(other);
                 }
             }
             at += 1;

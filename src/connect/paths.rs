@@ -98,7 +98,8 @@ impl Connectivity {
         paths
     }
 
-    /// The nets that a walk from `start` can reach, `start` first; walks do not leave a net that `at` calls an end.
+    /// The nets that a walk from `start` can reach, `start` first; walks do not leave a net that `at` calls an end, the
+    /// start itself included: a supply net has more links than any question may look at.
     pub(crate) fn reach(
         &self,
         start: Id<Net>,
@@ -111,7 +112,7 @@ impl Connectivity {
         let mut taken = 0;
         while let Some(&here) = reach.nets.get(next) {
             next += 1;
-            if next > 1 && at(here) == At::End {
+            if at(here) == At::End {
                 continue;
             }
             for hop in self.hops(here) {
@@ -156,4 +157,4 @@ pub(crate) struct Reach {
 }
 
 /// Hops that one reach may look at.
-const MAX_REACH: usize = 20_000;
+const MAX_REACH: usize = 4_000;

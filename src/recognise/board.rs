@@ -3,6 +3,7 @@
 use rustc_hash::FxHashMap;
 use smallvec::SmallVec;
 use std::cmp::Ordering;
+use std::sync::RwLock;
 
 use crate::base::quantity::Ohms;
 use crate::base::table::Id;
@@ -18,6 +19,7 @@ use super::array::Array;
 use super::nature::{Nature, Natures};
 use super::noted::Noted;
 use super::order;
+use super::returns::Negative;
 use super::sanity::is_given;
 
 /// Everything below the judgement of one board, joined.
@@ -41,6 +43,7 @@ pub(crate) struct Board<'a> {
     inputs: FxHashMap<Id<Net>, SmallVec<[(u32, u32); 1]>>,
     coupled: Vec<Id<Element>>,
     several_returns: bool,
+    negatives: RwLock<FxHashMap<Id<Net>, Negative>>,
 }
 
 /// What a pin does to the net it is on, as far as the part is known.
@@ -99,6 +102,7 @@ impl<'a> Board<'a> {
             inputs,
             coupled,
             several_returns,
+            negatives: RwLock::default(),
         }
     }
 
@@ -246,6 +250,18 @@ impl<'a> Board<'a> {
     /// Whether the netlist shows more than one return.
     pub(crate) fn has_several_returns(&self) -> bool {
         self.several_returns
+    }
+
+    /// What `find` says of the rail at `net`, asked once: a supply net has very many pins.
+    pub(crate) fn negative_of(&self, net: Id<Net>, find: impl FnOnce() -> Negative) -> Negative {
+        if let Some(known) = self.negatives.read().ok().and_then(|known| known.get(&net).copied()) {
+            return known;
+        }
+        let found = find();
+        if let Ok(mut known) = self.negatives.write() {
+            known.insert(net, found);
+        }
+        found
     }
 
     /// Whether the netlist is one sheet of several, as the notes say.

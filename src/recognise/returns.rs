@@ -32,8 +32,13 @@ pub(crate) enum Negative {
     Unknown,
 }
 
-/// The negative terminal of the supply of the rail at `net`.
+/// The negative terminal of the supply of the rail at `net`, looked up once a rail.
 pub(crate) fn negative(board: &Board<'_>, net: Id<Net>) -> Negative {
+    let net = board.rails.rail(net).map_or(net, |rail| rail.net);
+    board.negative_of(net, || find_negative(board, net))
+}
+
+fn find_negative(board: &Board<'_>, net: Id<Net>) -> Negative {
     if let Some(reference) = board.rails.rail(net).and_then(|rail| rail.reference) {
         return Negative::Net(reference);
     }

@@ -68,7 +68,7 @@ pub(crate) fn good() -> Review {
         judged: Judged { questions: vec![question], tally, ..Judged::default() },
         not_judged: Vec::new(),
         assumptions: vec![("+12V is 12 V within 5 %".to_owned(), "from the net's name".to_owned())],
-        sources,
+        sources: sources.into(),
     }
 }
 

@@ -3,26 +3,26 @@
 use std::fmt::Write as _;
 
 /// What a generated board holds.
-pub struct Board {
+pub(crate) struct Board {
     /// The netlist.
-    pub netlist: String,
+    pub(crate) netlist: String,
     /// How many elements it has.
-    pub elements: usize,
+    pub(crate) elements: usize,
     /// The arrays that were given a mistake, each with the rule card that must find it.
-    pub mistakes: Vec<(String, &'static str)>,
+    pub(crate) mistakes: Vec<(String, &'static str)>,
 }
 
 /// A xorshift generator: all that a test board needs of chance.
-pub struct Chance(u64);
+pub(crate) struct Chance(u64);
 
 impl Chance {
     /// Starts from `seed`.
-    pub fn new(seed: u64) -> Self {
+    pub(crate) fn new(seed: u64) -> Self {
         Self(seed.wrapping_mul(0x9E37_79B9_7F4A_7C15) | 1)
     }
 
     /// A number below `bound`.
-    pub fn below(&mut self, bound: u64) -> u64 {
+    pub(crate) fn below(&mut self, bound: u64) -> u64 {
         self.0 ^= self.0 << 13;
         self.0 ^= self.0 >> 7;
         self.0 ^= self.0 << 17;
@@ -32,7 +32,7 @@ impl Chance {
 
 /// A board of `arrays` seven-channel arrays with relays, indicator LEDs and drivers, fifty elements each; one array in
 /// a hundred has a mistake.
-pub fn board(arrays: usize, seed: u64) -> Board {
+pub(crate) fn board(arrays: usize, seed: u64) -> Board {
     let mut chance = Chance::new(seed);
     let mut out = String::with_capacity(arrays * 2_000);
     let mut board = Board { netlist: String::new(), elements: 3, mistakes: Vec::new() };

@@ -102,6 +102,18 @@ fn a_file_outside_is_refused_unless_its_folder_is_allowed() {
 }
 
 #[test]
+fn several_files_may_be_sheets_of_one_board() {
+    let mut sources = Sources::default();
+    let texts = ["One\nR1 a 0 1k\nX1 a S\n", "Two\nR2 A 0 2k\n.subckt S x\nR1 x 0 3k\n.ends\n"];
+    let roots = texts.map(|text| Root { file: sources.add("sheet.cir".to_owned(), text.to_owned()), folder: None });
+    let program = load(&mut sources, &roots, &[], &Limits::BOARD).unwrap();
+    let board = boards(&program, &Closed::new())[0];
+    let flat = expand(&program, &sources, board, &Closed::new(), &Limits::BOARD).unwrap();
+    let read = Read { circuit: flat.circuit, notices: flat.notices };
+    assert_eq!(read.lines(), ["R1 a 0 = 1 kohm", "X1/R1 a 0 = 3 kohm", "R2 a 0 = 2 kohm"]);
+}
+
+#[test]
 fn a_file_included_twice_is_read_once() {
     let board = "A board\n.include r.inc\n.include ./r.inc\nR2 a 0 1k\n";
     let read = read_in(&[("r.inc", "* part\nR1 a 0 1k\n")], board, &Limits::BOARD).unwrap();
