@@ -222,7 +222,8 @@ fn as_load(board: &Board<'_>, branch: &Branch, row: usize) -> Option<Load> {
     let led_reversed = branch.blocked_by_led_only(board) && !matches!(branch.end, End::Return(_));
     let into = branch.conducts_in(board) || led_reversed;
     let supply = match branch.end {
-        End::Rail(net) if into => Supply::Rail(net),
+        // A net that is a rail by its copper bears another name: the rail's own says more.
+        End::Rail(net) if into => Supply::Rail(board.rails.rail(net).map_or(net, |rail| rail.net)),
         End::Connector(_) | End::Part(_) | End::Port(_) | End::Unnamed(_) if into => Supply::Maybe(branch.path.end),
         // The base or gate of a transistor is no dead end.
         End::Nowhere(net) if controls(board, net) => Supply::Maybe(net),

@@ -23,8 +23,10 @@ facts! {
         emitter_open: Flag, "The emitter pin leads nowhere: its net reaches neither return nor rail nor another part.";
         emitter_above: Flag, "The emitter pin is joined to a supply net, above the loads' return.";
         emitter_rail: Text, "That supply net.";
+        emitter_at_fault: Flag, "The emitter pin is known to be open, or above the return.";
         pins_several: Flag, "The instance shows several emitter pins or several clamp pins.";
         ground_pins_open: Text, "Emitter or clamp pins that are open while others of the same kind are tied.";
+        ground_pins_words: Text, "How many of the pins of that kind are tied, in words.";
         ground_pins_partial: Flag, "One of several emitter or clamp pins is open.";
     }
 }
@@ -36,10 +38,11 @@ impl Emitter {
         let emitters: Vec<&ArrayPin> = array.emitters().collect();
         let mut names: Vec<String> = emitters.iter().map(|pin| board.circuit.net_name(pin.net)).collect();
         names.dedup();
-        let partial = partial(site);
+        let (partial, words) = partial(site);
         let open = emitter_open(site, &emitters);
         let (above, rail) = if open.is(true) { (Fact::flag(false), None) } else { emitter_above(site, &emitters) };
         Self {
+            emitter_at_fault: Fact::flag(open.is(true) || above.is(true)),
             has_emitter: Fact::flag(!emitters.is_empty()),
             emitter_net: Fact::text(names.join(" and ")),
             emitter_open: open,
@@ -47,6 +50,7 @@ impl Emitter {
             emitter_rail: Fact::text(rail.map_or(String::new(), |net| board.circuit.net_name(net))),
             pins_several: Fact::flag(is_whole(site) && (emitters.len() > 1 || array.clamps().count() > 1)),
             ground_pins_partial: Fact::flag(!partial.is_empty()).at(array.span, "the array"),
+            ground_pins_words: Fact::text(words.join(", and ")),
             ground_pins_open: Fact::text(partial.join(" and ")),
         }
     }
@@ -159,22 +163,26 @@ fn is_it_a_return(board: &Board<'_>, net: Id<Net>) -> Question {
 }
 
 /// Emitter or clamp pins that are open while another of the same kind is tied. A clamp pin counts where one of its
-/// channels drives what may be a coil.
-fn partial(site: &Site<'_>) -> Vec<String> {
-    let mut open = Vec::new();
+/// channels drives what may be a coil. Also how many are tied, a sentence a kind.
+fn partial(site: &Site<'_>) -> (Vec<String>, Vec<String>) {
+    let (mut open, mut words) = (Vec::new(), Vec::new());
     if !is_whole(site) {
-        return open;
+        return (open, words);
     }
-    let kinds: [fn(Role) -> bool; 2] = [|role| role == Role::Emitter, |role| matches!(role, Role::Clamp(_))];
-    for kind in kinds {
+    let kinds: [(fn(Role) -> bool, &str); 2] =
+        [(|role| role == Role::Emitter, "ground pins"), (|role| matches!(role, Role::Clamp(_)), "clamp pins")];
+    for (kind, name) in kinds {
         let pins: Vec<&ArrayPin> = site.array.pins_of(kind).collect();
         let (lone, tied): (Vec<&ArrayPin>, Vec<&ArrayPin>) = pins.iter().partition(|pin| is_open(site.board, pin.net));
-        if !tied.is_empty() {
-            let needed = |pin: &&&ArrayPin| pin.role == Role::Emitter || serves_a_coil(site, pin);
-            open.extend(lone.iter().filter(needed).map(|pin| site.board.pin_words(pin.pin)));
+        let needed = |pin: &&&ArrayPin| pin.role == Role::Emitter || serves_a_coil(site, pin);
+        let missing: Vec<String> = lone.iter().filter(needed).map(|pin| site.board.pin_words(pin.pin)).collect();
+        if !tied.is_empty() && !missing.is_empty() {
+            let verb = if missing.len() == 1 { "is" } else { "are" };
+            words.push(format!("{} of {} {name} {verb} open, {}", missing.len(), pins.len(), missing.join(" and ")));
+            open.extend(missing);
         }
     }
-    open
+    (open, words)
 }
 
 fn serves_a_coil(site: &Site<'_>, clamp: &ArrayPin) -> bool {

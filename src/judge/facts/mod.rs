@@ -25,7 +25,7 @@ use crate::recognise::parallel::Group;
 use crate::recognise::site::{ChannelSite, Site};
 use crate::recognise::turn_off::Ways;
 
-use super::fact::{Fact, FactDef};
+use super::fact::{Fact, FactDef, FactValue};
 
 /// Every group of facts. Groups of one scope fill its slots in this order.
 pub(crate) const GROUPS: &[&[FactDef]] = &[
@@ -76,6 +76,13 @@ pub(crate) fn channel(site: &Site<'_>, channel: &ChannelSite<'_>) -> Vec<Fact> {
 pub(crate) fn load(site: &Site<'_>, channel: &ChannelSite<'_>, load: &Load, ways: &Ways) -> Vec<Fact> {
     let mut slots = Vec::with_capacity(turn_off::TurnOff::DEFS.len() + supply::Feed::DEFS.len());
     turn_off::TurnOff::of(site, channel, load, ways).into_slots(&mut slots);
+    // Cause before effect: what a load without a supply would do is not judged.
+    if supply::is_stranded(site, load) {
+        let reason = format!("{} gets no current as drawn", ask::load_name(site.board, load));
+        for slot in slots.iter_mut().filter(|slot| !matches!(slot.value, FactValue::Text(_) | FactValue::Texts(_))) {
+            *slot = Fact::reason(reason.clone(), None);
+        }
+    }
     supply::Feed::of(site, channel, load, ways).into_slots(&mut slots);
     slots
 }

@@ -16,7 +16,7 @@ facts! {
         profile: Text, "The part profile that its type names, or nearly names.";
         known: Flag, "Its type names a part profile.";
         fits: Flag, "Its node count fits a pin map of that profile.";
-        fitting: Texts, "The node counts that would fit.";
+        fitting: Text, "The node counts that would fit.";
         looks_like_array: Flag, "Its type is nearly that of a sink array, and no profile knows it.";
     }
 }
@@ -42,7 +42,7 @@ impl Part {
                 NoRoles::Count => Fact::flag(false).at(place, "this many nodes"),
                 NoRoles::NoMap => Fact::ask(super::ask::pins_of(board, element)),
             },
-            fitting: Fact::texts(counts.iter().map(|count| count.to_string().into()).collect()),
+            fitting: Fact::text(counts.iter().map(ToString::to_string).collect::<Vec<_>>().join(" or ")),
             looks_like_array: Fact::flag(false),
             ..Self::common(board, element, profile)
         }
@@ -53,7 +53,7 @@ impl Part {
         Self {
             known: Fact::flag(true),
             fits: Fact::flag(true).at(board.circuit.elements[element].span, "its nodes"),
-            fitting: Fact::texts(Vec::new()),
+            fitting: Fact::text(""),
             looks_like_array: Fact::flag(false),
             ..Self::common(board, element, profile)
         }
@@ -64,7 +64,7 @@ impl Part {
         Self {
             known: Fact::flag(false),
             fits: Fact::flag(true),
-            fitting: Fact::texts(Vec::new()),
+            fitting: Fact::text(""),
             looks_like_array: Fact::flag(true).at(board.circuit.elements[element].span, "its type"),
             ..Self::common(board, element, profile)
         }

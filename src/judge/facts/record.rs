@@ -137,6 +137,7 @@ fn doubt(site: &Site<'_>) -> String {
         Sanity::Explained(WrongMap::Mirrored) => {
             return format!("loads hang on its inputs ({inputs}), and what drives is at its outputs ({outputs})");
         }
+        Sanity::Explained(WrongMap::Shifted) => return shifted_words(site),
         _ => {}
     }
     let at = |what: &str, pin: &ArrayPin| {
@@ -150,6 +151,21 @@ fn doubt(site: &Site<'_>) -> String {
         (Some(emitter), _) => format!("{emitter}{none}"),
         (None, _) => "it shows no emitter pin".to_owned(),
     }
+}
+
+/// Where return and supply stand in place of emitter and clamp pin.
+fn shifted_words(site: &Site<'_>) -> String {
+    let board = site.board;
+    let Some(emitter) = site.array.emitters().next() else { return String::new() };
+    let on = |index: u16| {
+        let pin = crate::connect::graph::Pin { index, ..emitter.pin };
+        format!("{} is on {}", board.pin_words(pin), board.circuit.net_name(board.net_at(pin)))
+    };
+    let at = emitter.pin.index;
+    // One place early, the emitter's place holds the supply; one place late, the clamp pin's holds the return.
+    let early = board.rails.rail(emitter.net).is_some();
+    let (first, side) = if early { (at.saturating_sub(1), "before") } else { (at + 1, "behind") };
+    format!("return and supply stand one place {side} where they belong, {} and {}", on(first), on(first + 1))
 }
 
 /// Nothing on the net, and the net's name makes it neither rail nor return.

@@ -24,6 +24,7 @@ facts! {
         fed_blocked: Text, "The diode that keeps the supply from the load's far end.";
         far_end: Text, "The net at the load's far end.";
         led: Flag, "The load is a LED or a string of them.";
+        led_names: Text, "The LEDs of the load.";
         led_limited: Flag, "Something limits the LED's current.";
         led_shared: Flag, "LEDs of several channels share the resistor that limits them.";
         led_shared_by: Text, "The resistor that they share.";
@@ -42,10 +43,7 @@ impl Feed {
     pub(crate) fn of(site: &Site<'_>, channel: &ChannelSite<'_>, load: &Load, ways: &Ways) -> Self {
         let board = site.board;
         let cut = cut_of(board, site.array, channel.channel, &channel.hanging, load, ways);
-        let led = load
-            .branches
-            .iter()
-            .any(|&row| channel.hanging.branches.list[row].any(board, |kind| kind == LinkKind::Led));
+        let leds = leds(site, channel, load);
         let shared = Shared::of(site, channel, load);
         let blocking = blocking_led(site, channel, load);
         Self {
@@ -57,7 +55,8 @@ impl Feed {
                 blocked_by(site, channel, load).map_or(String::new(), |element| board.circuit.refdes(element)),
             ),
             far_end: Fact::text(far_end(site, channel, load).map_or(String::new(), |net| board.circuit.net_name(net))),
-            led: Fact::flag(led),
+            led: Fact::flag(!leds.is_empty()),
+            led_names: Fact::text(board.names_of(&leds)),
             led_limited: led_limited(site, channel, load),
             led_shared: Fact::flag(shared.is_some()),
             led_one_at_a_time: Fact::flag(shared.as_ref().is_some_and(|shared| shared.one_at_a_time(site, channel))),
@@ -113,6 +112,11 @@ fn emitter_is_negative(site: &Site<'_>) -> bool {
         let nets = board.connectivity.joined(pin.net);
         nets.into_iter().filter_map(|net| board.rails.rail(net)?.level).any(|level| level.nominal.0 < 0.0)
     })
+}
+
+/// Whether no supply reaches the load, or it lies between output and return.
+pub(crate) fn is_stranded(site: &Site<'_>, load: &Load) -> bool {
+    matches!(load.supply, Supply::None(_)) || (matches!(load.supply, Supply::Return(_)) && !emitter_is_negative(site))
 }
 
 fn fed(site: &Site<'_>, load: &Load) -> Fact {
@@ -192,6 +196,20 @@ fn blocked_by(site: &Site<'_>, channel: &ChannelSite<'_>, load: &Load) -> Option
                 |(link, forward): &(&Link, bool)| !link.kind.passes_dc(!forward) && link.kind != LinkKind::Capacitor;
             branch.links(site.board).find(against).map(|(link, _)| link.element)
         })
+}
+
+/// The LEDs of the load, in natural order.
+fn leds(site: &Site<'_>, channel: &ChannelSite<'_>, load: &Load) -> Vec<Id<Element>> {
+    let board = site.board;
+    let branches = load.branches.iter().map(|&row| &channel.hanging.branches.list[row]);
+    let mut leds: Vec<Id<Element>> = branches
+        .flat_map(|branch| branch.links(board))
+        .filter(|(link, _)| link.kind == LinkKind::Led)
+        .map(|(link, _)| link.element)
+        .collect();
+    board.sort_naturally(&mut leds);
+    leds.dedup();
+    leds
 }
 
 fn led_of(site: &Site<'_>, branch: &Branch) -> Option<Id<Element>> {
