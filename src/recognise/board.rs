@@ -220,6 +220,11 @@ impl<'a> Board<'a> {
         }
     }
 
+    /// A pin in a sentence: `pin 8`, with the port's name where the netlist gives one: `pin E`.
+    pub(crate) fn pin_words(&self, pin: Pin) -> String {
+        format!("pin {}", self.pin_label(pin))
+    }
+
     /// Whether a person gave the net its name, not an exporter.
     pub(crate) fn has_given_name(&self, net: Id<Net>) -> bool {
         is_given(self.circuit.names.text(self.circuit.nets[net].name))

@@ -11,7 +11,7 @@ use crate::base::table::Id;
 use crate::circuit::model::{Circuit, Net};
 use crate::circuit::{self, Expanded, Limits};
 use crate::connect::graph::Connectivity;
-use crate::connect::rails::Rails;
+use crate::connect::rails::{NetNote, NotedRole, Rails};
 use crate::judge::card::Card;
 use crate::judge::fact::{Fact, SCOPES, Scope};
 use crate::judge::facts;
@@ -34,6 +34,7 @@ use crate::recognise::noted::{Directory, Noted};
 use crate::recognise::parallel::groups_of;
 use crate::recognise::sanity::Ground;
 use crate::recognise::site::Site;
+use crate::recognise::switched::switched_nodes;
 
 use super::input::Input;
 use super::known::Names;
@@ -150,7 +151,13 @@ fn judge_board(rules: &Rules, expanded: Expanded, notes: &Notes, held: bool, rev
     let natures = Natures::find(&circuit, &rules.library, &profiles);
     let outputs = output_nets(&circuit, &natures, &noted);
     let connectivity = Connectivity::build(&circuit, links(&circuit, &natures, &noted, &outputs));
-    let rails = Rails::find(&circuit, &connectivity, &noted.rails(notes, directory.as_ref()));
+    let mut net_notes = noted.rails(notes, directory.as_ref());
+    for node in switched_nodes(&circuit, &connectivity, &natures, &outputs) {
+        if let Err(at) = net_notes.binary_search_by_key(&node, |(net, _)| *net) {
+            net_notes.insert(at, (node, NetNote { role: Some(NotedRole::Signal), ..NetNote::default() }));
+        }
+    }
+    let rails = Rails::find(&circuit, &connectivity, &net_notes);
     let ground = Ground { circuit: &circuit, connectivity: &connectivity, rails: &rails, natures: &natures };
     let Found { arrays, without_roles } = find(&ground, &noted);
     if let Some(directory) = &directory {
@@ -182,6 +189,17 @@ fn judge_board(rules: &Rules, expanded: Expanded, notes: &Notes, held: bool, rev
     }
     if !board.arrays.is_empty() {
         rails_of(&board, &fed, &judge, &whole, &mut judged);
+    }
+    for array in board.arrays.iter().filter(|array| array.elements.len() == 1) {
+        let mut slots = Vec::new();
+        let element = array.elements[0];
+        facts::part::Part::of_array(&board, element, array.profile).into_slots(&mut slots);
+        judge.subject(
+            Scope::Part,
+            &|| subjects::part(&board, element),
+            &reach(&[(Scope::Part, &slots), (Scope::Board, &whole)]),
+            &mut judged,
+        );
     }
     for (element, profile, why) in without_roles {
         let mut slots = Vec::new();
