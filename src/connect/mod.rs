@@ -11,3 +11,6 @@ pub(crate) mod potential;
 pub(crate) mod rail_name;
 pub(crate) mod rails;
 pub(crate) mod segments;
+
+#[cfg(test)]
+mod tests;

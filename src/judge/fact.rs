@@ -5,6 +5,8 @@
 //! A number is an interval: what is assumed (a tolerance, a rail's voltage read from its name) spans a range, what is
 //! known is a range without width. A comparison that the range does not decide is unknown, and its assumptions say why.
 
+use std::sync::Arc;
+
 use crate::base::span::Span;
 
 /// What a card speaks of. Each scope sees the facts of the scopes around it: [`Scope::reach`].
@@ -153,8 +155,8 @@ pub(crate) struct Because {
     pub inputs: Vec<(&'static str, f64, &'static str)>,
     /// Published source of a number that the netlist does not give.
     pub source: Option<String>,
-    /// What was assumed, each with the question that would settle it.
-    pub assumptions: Vec<Assumed>,
+    /// What was assumed, each with the question that would settle it. Shared: one rail's tolerance stands behind very many facts.
+    pub assumptions: Vec<Arc<Assumed>>,
     /// Why the value is not known.
     pub gaps: Vec<Gap>,
     /// The number is from memory, not from a published source: it may leave a verdict open, never break it.
@@ -272,8 +274,8 @@ impl Fact {
     }
 
     /// The same with something that was taken for granted.
-    pub(crate) fn assuming(mut self, assumed: Assumed) -> Self {
-        self.because.get_or_insert_default().assumptions.push(assumed);
+    pub(crate) fn assuming(mut self, assumed: impl Into<Arc<Assumed>>) -> Self {
+        self.because.get_or_insert_default().assumptions.push(assumed.into());
         self
     }
 

@@ -236,7 +236,7 @@ fn as_load(board: &Board<'_>, branch: &Branch, row: usize) -> Option<Load> {
     if branch.any(board, |kind| matches!(kind, LinkKind::Capacitor | LinkKind::Suppressor(_))) {
         return None;
     }
-    let elements = naming(board, branch, kind);
+    let elements = naming(board, branch);
     if elements.is_empty() {
         return None;
     }
@@ -253,7 +253,7 @@ fn as_load(board: &Board<'_>, branch: &Branch, row: usize) -> Option<Load> {
 }
 
 /// The elements that name a load: what does work, and the resistors beside it.
-fn naming(board: &Board<'_>, branch: &Branch, kind: LoadKind) -> SmallVec<[Id<Element>; 4]> {
+fn naming(board: &Board<'_>, branch: &Branch) -> SmallVec<[Id<Element>; 4]> {
     let mut elements: SmallVec<[Id<Element>; 4]> = branch
         .links(board)
         .filter(|(link, _)| {
@@ -261,25 +261,20 @@ fn naming(board: &Board<'_>, branch: &Branch, kind: LoadKind) -> SmallVec<[Id<El
         })
         .map(|(link, _)| link.element)
         .collect();
-    // A coil is named alone; its series resistor shows in the numbers.
-    if matches!(kind, LoadKind::RelayCoil | LoadKind::Solenoid | LoadKind::Motor | LoadKind::StepperWinding) {
-        let coils: SmallVec<[Id<Element>; 4]> =
-            branch.links(board).filter(|(link, _)| link.kind.is_inductive()).map(|(link, _)| link.element).collect();
-        if !coils.is_empty() {
-            elements = coils;
-        }
-    }
     board.sort_naturally(&mut elements);
     elements.dedup();
     elements
 }
 
-/// Resistance of everything on the path; none where a part of it is not known.
+/// Resistance of everything on the path; none where a part of it is not known. An inductor without a resistance of its
+/// own behind a resistor is how SPICE decks draw a coil: the resistor is the winding's.
 fn series_ohms(board: &Board<'_>, branch: &Branch) -> Option<Ohms> {
+    let drawn_apart = branch.any(board, |kind| matches!(kind, LinkKind::Resistor(_)) && !kind.is_low_resistance());
     let mut sum = 0.0;
     for (link, _) in branch.links(board) {
         sum += match link.kind {
             LinkKind::Resistor(ohms) => ohms?.0,
+            LinkKind::Inductor if drawn_apart => board.winding_ohms(link.element).map_or(0.0, |ohms| ohms.0),
             kind if kind.is_inductive() || matches!(kind, LinkKind::Lamp | LinkKind::Buzzer) => {
                 board.winding_ohms(link.element)?.0
             }

@@ -211,7 +211,7 @@ fn asides(text: &mut String, review: &Review, look: Look) {
         parts.push(format!("Assumed: {} ({}){more}", shown(assumption), shown(evidence)));
     }
     if notes > 0 {
-        parts.push(counted(notes, "note on reading"));
+        parts.push(counted(notes, "reading note"));
     }
     if review.assumptions.len() + notes > 1 {
         parts.push("--as json lists them".to_owned());

@@ -55,9 +55,24 @@ pub struct Review {
 pub fn review(netlist: &Path, options: &Options) -> Vec<Review> {
     let name = netlist.to_string_lossy().into_owned();
     match input::read(netlist, options) {
-        Ok(input) => pipeline::run(&name, input, false),
+        Ok(input) => worth_telling(pipeline::run(&name, input, false)),
         Err(notice) => vec![Review::unreadable(name, notice)],
     }
+}
+
+/// A library of eighty cells without a sink array is one line, not eighty.
+fn worth_telling(mut reviews: Vec<Review>) -> Vec<Review> {
+    let tells = |review: &Review| review.error.is_some() || !review.arrays.is_empty() || !review.judged.findings.is_empty();
+    if reviews.len() > 1 {
+        let spare = reviews.iter().position(|review| !tells(review));
+        if reviews.iter().any(tells) {
+            reviews.retain(tells);
+        } else if let Some(at) = spare {
+            reviews.swap(0, at);
+            reviews.truncate(1);
+        }
+    }
+    reviews
 }
 
 /// Judges a netlist that is text, with notes that are text: nothing is read from any folder. What holds is kept too.

@@ -1,4 +1,5 @@
 //! End to end: the program itself, over `fixtures/`.
 
 mod cards;
+mod recognition;
 mod reports;

@@ -1,0 +1,156 @@
+//! What is recognised on a board: arrays by type and pin map, channels, and what hangs on them.
+
+use std::fs;
+
+use lowside::{Format, Look, Options, review, write_reviews};
+use serde_json::Value;
+
+/// The JSON of the boards in `netlist`.
+fn judged(netlist: &str) -> Vec<Value> {
+    let folder = tempfile::tempdir().expect("a folder");
+    let file = folder.path().join("board.cir");
+    fs::write(&file, netlist).expect("the board can be written");
+    let mut out = Vec::new();
+    write_reviews(&mut out, review(&file, &Options::default()).into_iter(), Format::Json, Look::default()).expect("JSON is written");
+    let report: Value = serde_json::from_slice(&out).expect("it is JSON");
+    report["boards"].as_array().cloned().unwrap_or_default()
+}
+
+/// Each channel that drives something: `U1.ch1 EN1 > OUT1: K1@+12V`; each array first: `U1 x2003 pin-numbers`.
+fn seen(netlist: &str) -> Vec<String> {
+    let mut lines = Vec::new();
+    let text = |value: &Value| value.as_str().unwrap_or("-").to_owned();
+    for board in judged(netlist) {
+        for array in board["arrays"].as_array().into_iter().flatten() {
+            lines.push(format!("{} {} {}", text(&array["refdes"]), text(&array["profile"]), text(&array["pins_from"])));
+            for channel in array["channels"].as_array().into_iter().flatten() {
+                let loads: Vec<String> = channel["loads"]
+                    .as_array()
+                    .into_iter()
+                    .flatten()
+                    .map(|load| {
+                        let elements: Vec<String> = load["elements"].as_array().into_iter().flatten().map(text).collect();
+                        format!("{} {}@{}", text(&load["kind"]), elements.join("+"), text(&load["supply"]))
+                    })
+                    .collect();
+                if !loads.is_empty() {
+                    lines.push(format!(
+                        "  ch{} {} > {}: {}",
+                        channel["index"],
+                        text(&channel["input_net"]),
+                        text(&channel["output_net"]),
+                        loads.join(", ")
+                    ));
+                }
+            }
+        }
+    }
+    lines
+}
+
+#[track_caller]
+fn check(netlist: &str, expected: &[&str]) {
+    assert_eq!(seen(netlist), expected, "{netlist}");
+}
+
+#[test]
+fn pin_number_order_serves_where_nothing_else_does() {
+    check(
+        "board\nU1 A1 A2 A3 A4 A5 A6 A7 GND +12V Y7 Y6 Y5 Y4 Y3 Y2 Y1 ULN2003A\nK1 +12V Y1 RELAY_12V\nK7 +12V Y7 RELAY_12V\n",
+        &["U1 x2003 pin-numbers", "  ch1 A1 > Y1: relay-coil K1@+12V", "  ch7 A7 > Y7: relay-coil K7@+12V"],
+    );
+}
+
+#[test]
+fn port_names_serve_in_any_order_and_spelling() {
+    check(
+        "board\n.subckt ULN2003A out1 out2 out3 out4 out5 out6 out7 com gnd in7 in6 in5 in4 in3 in2 in1\n.ends\n\
+         X1 Y1 Y2 Y3 Y4 Y5 Y6 Y7 +12V GND A7 A6 A5 A4 A3 A2 A1 ULN2003A\nK1 +12V Y1 RELAY_12V\n",
+        &["X1 x2003 port-names", "  ch1 A1 > Y1: relay-coil K1@+12V"],
+    );
+    check(
+        "board\n.subckt ULN2003 B[1] B[2] B[3] B[4] B[5] B[6] B[7] E\n+ COM C[7] C[6] C[5] C[4] C[3] C[2] C[1]\n.ends\n\
+         XU1 A1 A2 A3 A4 A5 A6 A7 GND +12V Y7 Y6 Y5 Y4 Y3 Y2 Y1 ULN2003\nK2 +12V Y2 RELAY_12V\n",
+        &["U1 x2003 port-names", "  ch2 A2 > Y2: relay-coil K2@+12V"],
+    );
+}
+
+#[test]
+fn twenty_pin_packages_move_every_pin_by_one() {
+    check(
+        "board\nU1 NC A1 A2 A3 A4 A5 A6 A7 A8 GND +24V Y8 Y7 Y6 Y5 Y4 Y3 Y2 Y1 NC TBD62083A\nK1 +24V Y1 RELAY_24V\n",
+        &[],
+    );
+    check(
+        "board\nU1 NC A1 A2 A3 A4 A5 A6 A7 A8 GND +24V Y8 Y7 Y6 Y5 Y4 Y3 Y2 Y1 NC ULN2803A\nK1 +24V Y1 RELAY_24V\n",
+        &["U1 x2803 pin-numbers", "  ch1 A1 > Y1: relay-coil K1@+24V"],
+    );
+}
+
+#[test]
+fn gates_of_one_package_are_one_array() {
+    check(
+        "board\n.subckt SN7407 A Y\n.ends\nXU1A A1 B1 SN7407\nXU1B A2 B2 SN7407\nXU1F A6 B6 SN7407\n\
+         R1 +12V B1 470\nR2 +12V B2 470\nR6 +12V B6 470\n",
+        &[
+            "U1 x7407 port-names",
+            "  ch1 A1 > B1: resistor R1@+12V",
+            "  ch2 A2 > B2: resistor R2@+12V",
+            "  ch6 A6 > B6: resistor R6@+12V",
+        ],
+    );
+}
+
+#[test]
+fn a_sheet_that_is_used_twice_gives_two_arrays() {
+    check(
+        "board\n.subckt PUMPS EN +24V GND\nXU1 EN GND GND GND GND GND GND GND +24V N7 N6 N5 N4 N3 N2 OUT ULN2003A\n\
+         K1 +24V OUT RELAY_24V\n.ends\nXA E1 +24V GND PUMPS\nXB E2 +24V GND PUMPS\n",
+        &[
+            "XA/U1 x2003 pin-numbers",
+            "  ch1 E1 > XA/OUT: relay-coil XA/K1@+24V",
+            "XB/U1 x2003 pin-numbers",
+            "  ch1 E2 > XB/OUT: relay-coil XB/K1@+24V",
+        ],
+    );
+}
+
+#[test]
+fn look_alikes_and_other_parts_are_no_arrays() {
+    for part in ["IRF7406", "UDN2981A", "TD62783AP", "LM324", "74HC595"] {
+        let netlist = format!("board\nU1 A1 A2 A3 A4 A5 A6 A7 A8 V GND Y8 Y7 Y6 Y5 Y4 Y3 Y2 Y1 {part}\n");
+        check(&netlist, &[]);
+    }
+}
+
+#[test]
+fn loads_are_told_with_all_that_lies_between_output_and_rail() {
+    check(
+        "board\nU1 A1 A2 A3 A4 A5 A6 A7 GND +12V Y7 Y6 Y5 Y4 Y3 Y2 Y1 ULN2003A\n\
+         F1 +12V VF 1A\nK1 VF Y1 RELAY_12V\n\
+         LED2 +12V N2 LED_RED\nR2 N2 Y2 1k\n\
+         L3 +12V N3 100m\nR3 N3 Y3 60\nD3 Y3 +12V 1N4007\n\
+         LA4 +12V Y4 LAMP_12V\n\
+         M5 +12V Y5 MOTOR_12V\n\
+         J6 Y6 +12V TERMINAL\n\
+         R7 +5V Y7 10k\n",
+        &[
+            "U1 x2003 pin-numbers",
+            "  ch1 A1 > Y1: relay-coil K1@+12V",
+            "  ch2 A2 > Y2: led LED2+R2@+12V",
+            "  ch3 A3 > Y3: inductor L3+R3@+12V",
+            "  ch4 A4 > Y4: lamp LA4@+12V",
+            "  ch5 A5 > Y5: motor M5@+12V",
+            "  ch6 A6 > Y6: unknown @+12V",
+            "  ch7 A7 > Y7: resistor R7@+5V",
+        ],
+    );
+}
+
+#[test]
+fn a_relay_whose_pins_nobody_names_has_its_coil_between_rail_and_output() {
+    check(
+        "board\nU1 A1 A2 A3 A4 A5 A6 A7 GND +12V Y7 Y6 Y5 Y4 Y3 Y2 Y1 ULN2003A\nK1 NO1 COM1 NC1 Y1 +12V G5V\n",
+        &["U1 x2003 pin-numbers", "  ch1 A1 > Y1: relay-coil K1@+12V"],
+    );
+}
