@@ -185,13 +185,23 @@ impl Rails {
             if level.nominal.0 == 0.0 {
                 return Role::Return(return_kind(says));
             }
-            return Role::Rail(self.rails.push(Rail { net, level: Some(level), source: steady, name_volts, reference }));
+            return Role::Rail(self.rails.push(Rail {
+                net,
+                level: Some(level),
+                source: steady,
+                name_volts,
+                reference,
+            }));
         }
         match says {
             NameSays::Return(kind) => Role::Return(kind),
-            NameSays::Rail(_) => Role::Rail(self.rails.push(Rail { net, level: by_name, source: None, name_volts, reference })),
+            NameSays::Rail(_) => {
+                Role::Rail(self.rails.push(Rail { net, level: by_name, source: None, name_volts, reference }))
+            }
             _ if floating_returns.contains(&net) => Role::Return(ReturnKind::Power),
-            NameSays::UnknownRail => Role::Rail(self.rails.push(Rail { net, level: None, source: None, name_volts, reference })),
+            NameSays::UnknownRail => {
+                Role::Rail(self.rails.push(Rail { net, level: None, source: None, name_volts, reference }))
+            }
             NameSays::Signal if note.is_some_and(|note| note.role == Some(NotedRole::Rail)) => {
                 Role::Rail(self.rails.push(Rail { net, level: None, source: None, name_volts, reference }))
             }

@@ -239,9 +239,8 @@ impl Reference {
     /// `net` as the reference of the block `by`.
     fn of_part(board: &Board<'_>, net: Id<Net>, by: Id<Element>) -> Self {
         let rails = board.circuit.pins(by).iter().filter(|&&net| board.rails.rail(net).is_some());
-        let negatives: Option<Vec<Id<Net>>> = rails
-            .map(|&rail| if let Negative::Net(net) = negative(board, rail) { Some(net) } else { None })
-            .collect();
+        let negatives: Option<Vec<Id<Net>>> =
+            rails.map(|&rail| if let Negative::Net(net) = negative(board, rail) { Some(net) } else { None }).collect();
         // With one supply in the dark nobody can say that the part moves as a whole.
         Self { net, by, analogue: false, supplies: negatives.unwrap_or_default() }
     }
@@ -249,12 +248,7 @@ impl Reference {
 
 /// The links that the current of `emitter` shares with one of `references` on its way to `negative`. A part that hangs
 /// behind such a link together with its own supplies moves as a whole: it is not lifted.
-pub(crate) fn shared(
-    board: &Board<'_>,
-    emitter: Id<Net>,
-    references: &[Reference],
-    negative: Id<Net>,
-) -> Vec<Shared> {
+pub(crate) fn shared(board: &Board<'_>, emitter: Id<Net>, references: &[Reference], negative: Id<Net>) -> Vec<Shared> {
     let mut shared = Vec::new();
     // With the emitter on the supply's own copper, or every reference there, nothing is shared that lifts.
     let apart = |net: Id<Net>| !board.connectivity.same(net, negative);
@@ -272,8 +266,11 @@ pub(crate) fn shared(
             let as_a_whole = !supplies.is_empty() && supplies.iter().all(|net| bridge.behind.contains(net));
             bridge.behind.contains(&reference.net) && !as_a_whole
         };
-        let Some(reference) = references.iter().find(lifted) else { continue };
-        let arrays = (0..board.arrays.len())
+        let lifted: Vec<&Reference> = references.iter().filter(lifted).collect();
+        if lifted.is_empty() {
+            continue;
+        }
+        let arrays: Vec<usize> = (0..board.arrays.len())
             .filter(|&array| board.arrays[array].emitters().any(|pin| bridge.behind.contains(&pin.net)))
             .collect();
         let ohms = match link.kind {
@@ -281,7 +278,12 @@ pub(crate) fn shared(
             LinkKind::Inductor => board.winding_ohms(link.element),
             _ => board.noted.element_ohms(link.element),
         };
-        shared.push(Shared { element: link.element, ohms, reference: reference.clone(), arrays });
+        shared.extend(lifted.into_iter().map(|reference| Shared {
+            element: link.element,
+            ohms,
+            reference: reference.clone(),
+            arrays: arrays.clone(),
+        }));
     }
     shared
 }

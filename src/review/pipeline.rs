@@ -299,13 +299,7 @@ fn array(board: &Board<'_>, number: usize, judge: &Judge<'_>, whole: &[Fact]) ->
 }
 
 /// Judges every rail, and every pair of rails that something joins.
-fn rails_of(
-    board: &Board<'_>,
-    fed: &FxHashMap<Id<Net>, Fed>,
-    judge: &Judge<'_>,
-    whole: &[Fact],
-    out: &mut Partial,
-) {
+fn rails_of(board: &Board<'_>, fed: &FxHashMap<Id<Net>, Fed>, judge: &Judge<'_>, whole: &[Fact], out: &mut Partial) {
     for (_, rail) in board.rails.rails.iter() {
         let fed = fed.get(&rail.net).cloned().unwrap_or_default();
         let mut slots = Vec::new();

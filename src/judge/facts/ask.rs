@@ -98,7 +98,9 @@ pub(crate) fn returns_joined(board: &Board<'_>, a: Id<Net>, b: Id<Net>) -> Quest
 /// Which return does the current of this rail come back to?
 pub(crate) fn rail_return(board: &Board<'_>, net: Id<Net>) -> Question {
     let name = board.circuit.net_name(net);
-    Question { answer: format!("[rails.\"{name}\"] return = \"…\""), at: name, asks: "where does its current return?" }
+    Question {
+        answer: format!("[rails.\"{name}\"] return = \"…\""), at: name, asks: "where does its current return?"
+    }
 }
 
 /// How far may this reference be lifted?

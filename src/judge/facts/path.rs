@@ -1,10 +1,12 @@
 //! Facts of a return path: how the current of an array's loads comes back to the supply.
 
+use std::sync::Arc;
+
 use crate::base::table::Id;
 use crate::circuit::model::Net;
 use crate::connect::rail_name::ReturnKind;
 use crate::connect::rails::Role as NetRole;
-use crate::judge::fact::{Fact, FactValue, Gap, Interval, facts};
+use crate::judge::fact::{Assumed, Fact, FactValue, Gap, Interval, facts};
 use crate::recognise::board::Board;
 use crate::recognise::load::{Load, Supply};
 use crate::recognise::returns::{
@@ -43,7 +45,9 @@ impl Path {
         let feeds = feeds(site);
         let way = way_back(board, emitter, &feeds);
         let at_return = |net: &Id<Net>| board.rails.is_return(*net);
-        let several = board.has_several_returns() || !emitter.as_ref().is_some_and(at_return);
+        let another = |feed: &Feed| matches!(feed.negative, Negative::Net(net) if Some(net) != emitter);
+        let several =
+            board.has_several_returns() || !emitter.as_ref().is_some_and(at_return) || feeds.iter().any(another);
         let worst = emitter.filter(|_| several).and_then(|emitter| worst(site, emitter, &feeds));
         let name = |net: Option<Id<Net>>| Fact::text(net.map_or(String::new(), |net| board.circuit.net_name(net)));
         // What is shared names its own supply, the rest the supply whose way back is missing.
@@ -63,9 +67,11 @@ impl Path {
             },
             shared_by: Fact::text(worst.as_ref().map_or(String::new(), |w| board.circuit.refdes(w.share.element))),
             shared_reference: name(worst.as_ref().map(|worst| worst.share.reference.net)),
-            shared_part: Fact::text(worst.as_ref().map_or(String::new(), |w| board.circuit.refdes(w.share.reference.by))),
-            allowance: allowance(site, worst.as_ref().map(|worst| &worst.share.reference)),
-            shift: worst.map_or(Fact::number(0.0), |worst| worst.shift),
+            shared_part: Fact::text(
+                worst.as_ref().map_or(String::new(), |w| board.circuit.refdes(w.share.reference.by)),
+            ),
+            shift: worst.as_ref().map_or(Fact::number(0.0), |worst| worst.shift.clone()),
+            allowance: worst.map_or(Fact::number(0.0), |worst| worst.allowance),
         }
     }
 }
@@ -142,7 +148,8 @@ fn comes_back(board: &Board<'_>, emitter: Id<Net>, feed: &Feed) -> Fact {
 fn every_return_joined(board: &Board<'_>, emitter: Id<Net>) -> bool {
     let mut returns = board.circuit.nets.ids().filter(|&net| {
         let kind = board.rails.role(net);
-        matches!(kind, NetRole::Return(ReturnKind::Power | ReturnKind::Signal)) && !board.connectivity.pins(net).is_empty()
+        matches!(kind, NetRole::Return(ReturnKind::Power | ReturnKind::Signal))
+            && !board.connectivity.pins(net).is_empty()
     });
     returns.by_ref().take(MAX_RETURNS).all(|net| joined(board, emitter, net)) && returns.next().is_none()
 }
@@ -169,30 +176,44 @@ fn signal_ground(board: &Board<'_>, emitter: Option<Id<Net>>, feeds: &[Feed]) ->
     open.map_or(Fact::flag(false), |supply| Fact::ask(ask::rail_return(board, supply)))
 }
 
-/// What is shared, and what it does.
+/// What is shared, what it does, and how much of it may be.
 struct Worst {
     supply: Id<Net>,
     negative: Id<Net>,
     share: Shared,
     shift: Fact,
+    allowance: Fact,
 }
 
-/// The shared part that lifts a reference most; one of unknown resistance only where none is known.
+impl Worst {
+    /// How bad it is, for comparison: above 2 past its allowance, 2 where that is not known, the share of it below.
+    fn badness(&self) -> f64 {
+        match (&self.shift.value, &self.allowance.value) {
+            (FactValue::Number(shift), FactValue::Number(allowance)) if allowance.low > 0.0 => {
+                let share = shift.low / allowance.high;
+                if share > 1.0 { 1.0 + share } else { (shift.high / allowance.low).min(1.0) }
+            }
+            _ => 2.0,
+        }
+    }
+}
+
+/// The shared part and the reference that it lifts furthest for what it bears.
 fn worst(site: &Site<'_>, emitter: Id<Net>, feeds: &[Feed]) -> Option<Worst> {
     let board = site.board;
     let drivers = site.channels.iter().flat_map(|channel| &channel.drivers);
     let mut references: Vec<Reference> = drivers.flat_map(|drivers| driver_references(board, drivers)).collect();
     references.extend(analogue_references(board));
-    references.sort_by_key(|reference| (reference.analogue, reference.net, reference.by));
-    references.dedup_by_key(|reference| (reference.analogue, reference.net, reference.by));
-    let volts = |fact: &Fact| if let FactValue::Number(range) = &fact.value { range.nominal } else { -1.0 };
+    references.sort_by(|a, b| (a.analogue, a.net, &a.supplies, a.by).cmp(&(b.analogue, b.net, &b.supplies, b.by)));
+    references.dedup_by(|a, b| (a.analogue, a.net, &a.supplies) == (b.analogue, b.net, &b.supplies));
     let mut worst: Option<Worst> = None;
     for feed in feeds {
         let Negative::Net(negative) = feed.negative else { continue };
         for share in shared(board, emitter, &references, negative) {
-            let shift = shift(site, &share, negative);
-            if worst.as_ref().is_none_or(|other| volts(&shift) > volts(&other.shift)) {
-                worst = Some(Worst { supply: feed.supply, negative, share, shift });
+            let (shift, allowance) = (shift(site, &share, negative), allowance(site, &share.reference));
+            let found = Worst { supply: feed.supply, negative, share, shift, allowance };
+            if worst.as_ref().is_none_or(|other| found.badness() > other.badness()) {
+                worst = Some(found);
             }
         }
     }
@@ -204,14 +225,21 @@ fn shift(site: &Site<'_>, share: &Shared, root: Id<Net>) -> Fact {
     let board = site.board;
     let Some(ohms) = share.ohms else { return Fact::ask(ask::ohms(board, share.element)) };
     if share.arrays.len() > MAX_SHARERS {
-        return Fact::reason(format!("more than {MAX_SHARERS} arrays share {}", board.circuit.refdes(share.element)), None);
+        return Fact::reason(
+            format!("more than {MAX_SHARERS} arrays share {}", board.circuit.refdes(share.element)),
+            None,
+        );
     }
     let mut sum = Interval::exactly(0.0);
     let mut assumptions = Vec::new();
     let mut add = |site: &Site<'_>| {
         for load in site.channels.iter().flat_map(|channel| &channel.hanging.loads) {
             let Some(range) = amps(board, load, root, &mut assumptions)? else { continue };
-            sum = Interval { low: sum.low + range.low, nominal: sum.nominal + range.nominal, high: sum.high + range.high };
+            sum = Interval {
+                low: sum.low + range.low,
+                nominal: sum.nominal + range.nominal,
+                high: sum.high + range.high,
+            };
         }
         Ok::<(), Fact>(())
     };
@@ -222,10 +250,11 @@ fn shift(site: &Site<'_>, share: &Shared, root: Id<Net>) -> Fact {
         }
     }
     let ohms = ohms.0;
-    let fact = Fact::interval(Interval { low: ohms * sum.low, nominal: ohms * sum.nominal, high: ohms * sum.high }).formula(
-        "resistance x sum of the loads' currents",
-        &[("resistance", ohms, "ohm"), ("current", sum.nominal, "A")],
-    );
+    let fact = Fact::interval(Interval { low: ohms * sum.low, nominal: ohms * sum.nominal, high: ohms * sum.high })
+        .formula(
+            "resistance x sum of the loads' currents",
+            &[("resistance", ohms, "ohm"), ("current", sum.nominal, "A")],
+        );
     assumptions.into_iter().fold(fact, Fact::assuming)
 }
 
@@ -237,7 +266,7 @@ fn amps(
     board: &Board<'_>,
     load: &Load,
     root: Id<Net>,
-    assumptions: &mut Vec<crate::judge::fact::Assumed>,
+    assumptions: &mut Vec<Arc<Assumed>>,
 ) -> Result<Option<Interval>, Fact> {
     let Supply::Rail(net) = load.supply else { return Ok(None) };
     if let Negative::Net(other) = negative(board, net) {
@@ -267,21 +296,23 @@ const OUTPUT_DROP: f64 = 0.9;
 const OUTPUT_DROP_MOST: f64 = 1.6;
 
 /// What the notes allow, or the noise margin at low level of the driver's family: V_IL less V_OL.
-fn allowance(site: &Site<'_>, reference: Option<&Reference>) -> Fact {
+fn allowance(site: &Site<'_>, reference: &Reference) -> Fact {
     let board = site.board;
     let inputs = || site.array.channels.iter().flat_map(|channel| &channel.inputs).map(|pin| pin.net);
     let said = |net: Id<Net>| board.noted.net(net).and_then(|net| net.shift_v.as_ref());
-    if let Some(said) = reference.map(|reference| reference.net).into_iter().chain(inputs()).find_map(said) {
+    let noted = said(reference.net).or_else(|| inputs().filter(|_| !reference.analogue).find_map(said));
+    if let Some(said) = noted {
         return Fact::number(said.value.0).at(said.at, "the notes allow it");
     }
-    let Some(reference) = reference else { return Fact::number(0.0) };
     if reference.analogue {
         return Fact::ask(ask::shift_of(board, reference.net));
     }
     let family = inputs().find_map(|net| site.driver_family(net));
     match family.and_then(|name| board.library.levels(name)) {
         Some(levels) => match levels.low_out.iter().map(|point| point.level.at(levels.supply_v).0).reduce(f64::max) {
-            Some(low_out) => Fact::number(levels.low_in.at(levels.supply_v).0 - low_out).source(levels.low_in.from.text()),
+            Some(low_out) => {
+                Fact::number(levels.low_in.at(levels.supply_v).0 - low_out).source(levels.low_in.from.text())
+            }
             None => Fact::reason("the family's levels give no noise margin", None),
         },
         None => Fact::ask(ask::driver_family(site, Some(reference.net))),

@@ -107,7 +107,9 @@ impl Supply {
             joined_to: Fact::text(joint.map_or(String::new(), |joint| board.circuit.net_name(joint.other))),
             joined_by: Fact::text(joint.map_or(String::new(), |joint| joint.name(board))),
             joined_closed: joint.map_or(Fact::flag(false), |joint| joint.closed(board)),
-            joined_levels: Fact::text(joint.map_or(String::new(), |joint| format!("{} and {}", joint.volts.0, joint.volts.1))),
+            joined_levels: Fact::text(
+                joint.map_or(String::new(), |joint| format!("{} and {}", joint.volts.0, joint.volts.1)),
+            ),
             joined_apart: joint.map_or(Fact::number(0.0), |joint| joint.apart(board, rail)),
         }
     }
@@ -139,9 +141,14 @@ impl Said {
                 Origin::Source(element) => {
                     let volts = level.nominal;
                     let refdes = board.circuit.refdes(element);
-                    let word = Word { volts, words: format!("{refdes} gives {volts}"), place: board.circuit.elements[element].span };
+                    let word = Word {
+                        volts,
+                        words: format!("{refdes} gives {volts}"),
+                        place: board.circuit.elements[element].span,
+                    };
                     let at_net = board.circuit.pins(element).contains(&rail.net);
-                    if (at_net || rail.name_volts.is_none()) && said.list.iter().all(|other| other.words != word.words) {
+                    if (at_net || rail.name_volts.is_none()) && said.list.iter().all(|other| other.words != word.words)
+                    {
                         said.list.push(word);
                     }
                 }
@@ -183,9 +190,10 @@ fn is_bypassed(board: &Board<'_>, rail: Id<Net>) -> bool {
         |net| if board.rails.is_return(net) { At::End } else { At::On },
     );
     near.nets.iter().filter(|&&net| !board.rails.is_return(net)).any(|&net| {
-        board.connectivity.hops(net).any(|hop| {
-            board.connectivity.link(hop.link).kind == LinkKind::Capacitor && board.rails.is_return(hop.to)
-        })
+        board
+            .connectivity
+            .hops(net)
+            .any(|hop| board.connectivity.link(hop.link).kind == LinkKind::Capacitor && board.rails.is_return(hop.to))
     })
 }
 
