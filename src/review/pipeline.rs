@@ -15,7 +15,7 @@ use crate::connect::rails::{NetNote, NotedRole, Rails};
 use crate::judge::card::Card;
 use crate::judge::fact::{Fact, SCOPES, Scope};
 use crate::judge::facts;
-use crate::judge::facts::rail::Joint;
+use crate::judge::facts::rail::{Fed, Joint};
 use crate::judge::predicate::Reach;
 use crate::judge::shelf::Shelf;
 use crate::judge::verdict::{Judge, Partial};
@@ -84,7 +84,7 @@ pub(super) fn net_names(input: Input) -> Vec<String> {
 struct Came {
     judged: Partial,
     summary: Option<ArraySummary>,
-    fed: Vec<(Id<Net>, String, bool)>,
+    fed: Vec<(Id<Net>, Fed)>,
     not_judged: Vec<NotJudged>,
 }
 
@@ -174,17 +174,13 @@ fn judge_board(rules: &Rules, expanded: Expanded, notes: &Notes, held: bool, rev
     let arrays: Vec<Came> =
         (0..board.arrays.len()).into_par_iter().map(|number| array(&board, number, &judge, &whole)).collect();
     let mut judged = Partial::default();
-    let mut fed: FxHashMap<Id<Net>, (Vec<String>, bool)> = FxHashMap::default();
+    let mut fed: FxHashMap<Id<Net>, Fed> = FxHashMap::default();
     for came in arrays {
         judged.join(came.judged);
         review.arrays.extend(came.summary);
         review.not_judged.extend(came.not_judged);
-        for (net, array, switched) in came.fed {
-            let entry = fed.entry(net).or_default();
-            if entry.0.last() != Some(&array) {
-                entry.0.push(array);
-            }
-            entry.1 |= switched;
+        for (net, of_load) in came.fed {
+            fed.entry(net).or_default().join(of_load);
         }
     }
     if !board.arrays.is_empty() {
@@ -284,9 +280,8 @@ fn array(board: &Board<'_>, number: usize, judge: &Judge<'_>, whole: &[Fact]) ->
             let around = [(Scope::Load, &load_slots[..]), around[0], around[1], around[2]];
             judge.subject(Scope::Load, &|| subjects::load(&site, channel, load), &reach(&around), out);
             if let crate::recognise::load::Supply::Rail(net) = load.supply {
-                let switched = load.kind.is_inductive() == Some(true);
                 let net = board.rails.rail(net).map_or(net, |rail| rail.net);
-                came.fed.push((net, site.array.refdes.clone(), switched));
+                came.fed.push((net, Fed::by(&site, load)));
             }
         }
     }
@@ -324,24 +319,18 @@ fn array(board: &Board<'_>, number: usize, judge: &Judge<'_>, whole: &[Fact]) ->
 }
 
 /// Judges every rail, and every pair of rails that something joins.
-fn rails_of(
-    board: &Board<'_>,
-    fed: &FxHashMap<Id<Net>, (Vec<String>, bool)>,
-    judge: &Judge<'_>,
-    whole: &[Fact],
-    out: &mut Partial,
-) {
+fn rails_of(board: &Board<'_>, fed: &FxHashMap<Id<Net>, Fed>, judge: &Judge<'_>, whole: &[Fact], out: &mut Partial) {
     for (_, rail) in board.rails.rails.iter() {
-        let (arrays, switched) = fed.get(&rail.net).cloned().unwrap_or_default();
+        let fed = fed.get(&rail.net).cloned().unwrap_or_default();
         let mut slots = Vec::new();
-        facts::rail::Supply::of(board, rail, switched, None).into_slots(&mut slots);
+        facts::rail::Supply::of(board, rail, &fed, None).into_slots(&mut slots);
         let around = reach(&[(Scope::Rail, &slots), (Scope::Board, whole)]);
-        judge.subject(Scope::Rail, &|| subjects::rail(board, &[rail.net], &arrays), &around, out);
+        judge.subject(Scope::Rail, &|| subjects::rail(board, &[rail.net], &fed.arrays), &around, out);
         for joint in Joint::of(board, rail) {
             let mut slots = Vec::new();
-            facts::rail::Supply::of(board, rail, switched, Some(&joint)).into_slots(&mut slots);
+            facts::rail::Supply::of(board, rail, &fed, Some(&joint)).into_slots(&mut slots);
             let around = reach(&[(Scope::Rail, &slots), (Scope::Board, whole)]);
-            judge.subject(Scope::Rail, &|| subjects::rail(board, &[rail.net, joint.other], &arrays), &around, out);
+            judge.subject(Scope::Rail, &|| subjects::rail(board, &[rail.net, joint.other], &fed.arrays), &around, out);
         }
     }
 }
