@@ -88,7 +88,9 @@ impl Maker<'_> {
                 self.add(id, 1, 2, contact);
             }
             PartClass::Switch => self.add(id, 0, 1, LinkKind::Switch),
-            PartClass::Jumper => self.add(id, 0, 1, LinkKind::Jumper),
+            PartClass::Jumper => {
+                self.add(id, 0, 1, if self.is_closed(id, element) { LinkKind::Wire } else { LinkKind::Jumper })
+            }
             PartClass::NetTie => (1..pins).for_each(|pin| self.add(id, 0, pin, LinkKind::Wire)),
             PartClass::Fuse => self.add(id, 0, 1, LinkKind::Fuse),
             PartClass::Ferrite => self.add(id, 0, 1, LinkKind::Ferrite),
@@ -116,6 +118,18 @@ impl Maker<'_> {
             Some(ohms) if ohms.0.abs() <= WIRE_OHMS => LinkKind::Wire,
             ohms => LinkKind::Resistor(ohms.map(|ohms| Ohms(ohms.0.abs()))),
         }
+    }
+
+    /// A jumper that the notes give no resistance, or whose type says that it is closed as made.
+    fn is_closed(&self, id: Id<Element>, element: &Element) -> bool {
+        let words =
+            element.part_type.map(|name| self.circuit.names.text(name).to_ascii_uppercase()).unwrap_or_default();
+        let bridged = || {
+            words
+                .split(|c: char| !c.is_ascii_alphabetic())
+                .any(|word| matches!(word, "BRIDGED" | "CLOSED" | "NC" | "WIRE"))
+        };
+        self.noted.element_ohms(id).map_or_else(bridged, |ohms| ohms.0 <= WIRE_OHMS)
     }
 
     fn diode(&mut self, id: Id<Element>, element: &Element, kind: &Kind<'_>) {

@@ -285,9 +285,12 @@ fn naming(board: &Board<'_>, branch: &Branch) -> SmallVec<[Id<Element>; 4]> {
 fn series_ohms(board: &Board<'_>, branch: &Branch) -> Option<Ohms> {
     let drawn_apart = branch.any(board, |kind| matches!(kind, LinkKind::Resistor(_)) && !kind.is_low_resistance());
     let mut sum = 0.0;
+    // Beside a resistor that is drawn an inductor without one of its own is ideal: the resistor stands for its winding.
+    let drawn = branch.any(board, |kind| matches!(kind, LinkKind::Resistor(Some(_))) && !kind.is_low_resistance());
     for (link, _) in branch.links(board) {
         sum += match link.kind {
             LinkKind::Resistor(ohms) => ohms?.0,
+            LinkKind::Inductor if drawn => board.winding_ohms(link.element).map_or(0.0, |ohms| ohms.0),
             LinkKind::Inductor if drawn_apart => board.winding_ohms(link.element).map_or(0.0, |ohms| ohms.0),
             kind if kind.is_inductive() || matches!(kind, LinkKind::Lamp | LinkKind::Buzzer) => {
                 board.winding_ohms(link.element)?.0

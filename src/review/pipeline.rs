@@ -15,7 +15,7 @@ use crate::connect::rails::{NetNote, NotedRole, Rails};
 use crate::judge::card::Card;
 use crate::judge::fact::{Fact, SCOPES, Scope};
 use crate::judge::facts;
-use crate::judge::facts::rail::Joint;
+use crate::judge::facts::rail::{Fed, Joint};
 use crate::judge::predicate::Reach;
 use crate::judge::shelf::Shelf;
 use crate::judge::verdict::{Judge, Partial};
@@ -38,7 +38,7 @@ use crate::recognise::switched::switched_nodes;
 
 use super::input::Input;
 use super::known::Names;
-use super::{ArraySummary, NotJudged, Review, subjects, summary};
+use super::{ArraySummary, NotJudged, Review, silence, subjects, summary};
 
 /// The rules that come with the program, read once.
 struct Rules {
@@ -84,7 +84,7 @@ pub(super) fn net_names(input: Input) -> Vec<String> {
 struct Came {
     judged: Partial,
     summary: Option<ArraySummary>,
-    fed: Vec<(Id<Net>, String, bool)>,
+    fed: Vec<(Id<Net>, Fed)>,
     not_judged: Vec<NotJudged>,
 }
 
@@ -181,17 +181,13 @@ fn judge_board(
     let arrays: Vec<Came> =
         (0..board.arrays.len()).into_par_iter().map(|number| array(&board, number, &judge, &whole)).collect();
     let mut judged = Partial::default();
-    let mut fed: FxHashMap<Id<Net>, (Vec<String>, bool)> = FxHashMap::default();
+    let mut fed: FxHashMap<Id<Net>, Fed> = FxHashMap::default();
     for came in arrays {
         judged.join(came.judged);
         review.arrays.extend(came.summary);
         review.not_judged.extend(came.not_judged);
-        for (net, array, switched) in came.fed {
-            let entry = fed.entry(net).or_default();
-            if entry.0.last() != Some(&array) {
-                entry.0.push(array);
-            }
-            entry.1 |= switched;
+        for (net, of_load) in came.fed {
+            fed.entry(net).or_default().join(of_load);
         }
     }
     if !board.arrays.is_empty() {
@@ -228,6 +224,7 @@ fn judge_board(
             &mut judged,
         );
     }
+    review.not_judged.extend(silence::of_board(&board));
     review.assumptions = assumptions(&board);
     review.judged = judged.finish(&rules.shelf);
 }
@@ -265,6 +262,7 @@ fn array(board: &Board<'_>, number: usize, judge: &Judge<'_>, whole: &[Fact]) ->
     came.summary = Some(summary::array(&site));
     // Cause before effect: under a pin map that cannot be right every other fact is a guess.
     let doubt = matches!(site.array.sanity, Sanity::Explained(_)) && !facts::record::pins_confirmed(&site);
+    came.not_judged = silence::of_array(&site, doubt);
     let reason = format!("the pin map of {} is in doubt", site.array.refdes);
     let doubted = |slots: Vec<Fact>| {
         if doubt { slots.iter().map(|_| Fact::reason(reason.clone(), Some(site.array.span))).collect() } else { slots }
@@ -289,9 +287,8 @@ fn array(board: &Board<'_>, number: usize, judge: &Judge<'_>, whole: &[Fact]) ->
             let around = [(Scope::Load, &load_slots[..]), around[0], around[1], around[2]];
             judge.subject(Scope::Load, &|| subjects::load(&site, channel, load), &reach(&around), out);
             if let crate::recognise::load::Supply::Rail(net) = load.supply {
-                let switched = load.kind.is_inductive() == Some(true);
                 let net = board.rails.rail(net).map_or(net, |rail| rail.net);
-                came.fed.push((net, site.array.refdes.clone(), switched));
+                came.fed.push((net, Fed::by(&site, load)));
             }
         }
     }
@@ -329,24 +326,18 @@ fn array(board: &Board<'_>, number: usize, judge: &Judge<'_>, whole: &[Fact]) ->
 }
 
 /// Judges every rail, and every pair of rails that something joins.
-fn rails_of(
-    board: &Board<'_>,
-    fed: &FxHashMap<Id<Net>, (Vec<String>, bool)>,
-    judge: &Judge<'_>,
-    whole: &[Fact],
-    out: &mut Partial,
-) {
+fn rails_of(board: &Board<'_>, fed: &FxHashMap<Id<Net>, Fed>, judge: &Judge<'_>, whole: &[Fact], out: &mut Partial) {
     for (_, rail) in board.rails.rails.iter() {
-        let (arrays, switched) = fed.get(&rail.net).cloned().unwrap_or_default();
+        let fed = fed.get(&rail.net).cloned().unwrap_or_default();
         let mut slots = Vec::new();
-        facts::rail::Supply::of(board, rail, switched, None).into_slots(&mut slots);
+        facts::rail::Supply::of(board, rail, &fed, None).into_slots(&mut slots);
         let around = reach(&[(Scope::Rail, &slots), (Scope::Board, whole)]);
-        judge.subject(Scope::Rail, &|| subjects::rail(board, &[rail.net], &arrays), &around, out);
+        judge.subject(Scope::Rail, &|| subjects::rail(board, &[rail.net], &fed.arrays), &around, out);
         for joint in Joint::of(board, rail) {
             let mut slots = Vec::new();
-            facts::rail::Supply::of(board, rail, switched, Some(&joint)).into_slots(&mut slots);
+            facts::rail::Supply::of(board, rail, &fed, Some(&joint)).into_slots(&mut slots);
             let around = reach(&[(Scope::Rail, &slots), (Scope::Board, whole)]);
-            judge.subject(Scope::Rail, &|| subjects::rail(board, &[rail.net, joint.other], &arrays), &around, out);
+            judge.subject(Scope::Rail, &|| subjects::rail(board, &[rail.net, joint.other], &fed.arrays), &around, out);
         }
     }
 }

@@ -95,6 +95,30 @@ pub(crate) fn returns_joined(board: &Board<'_>, a: Id<Net>, b: Id<Net>) -> Quest
     }
 }
 
+/// Which return does the current of this rail come back to?
+pub(crate) fn rail_return(board: &Board<'_>, net: Id<Net>) -> Question {
+    let name = board.circuit.net_name(net);
+    Question {
+        answer: format!("[rails.\"{name}\"] return = \"…\""), at: name, asks: "where does its current return?"
+    }
+}
+
+/// How far may this reference be lifted?
+pub(crate) fn shift_of(board: &Board<'_>, net: Id<Net>) -> Question {
+    let name = board.circuit.net_name(net);
+    Question { answer: format!("[nets.\"{name}\"] shift_v = …"), at: name, asks: "how far may it shift?" }
+}
+
+/// Is this jumper closed?
+pub(crate) fn jumper(board: &Board<'_>, element: Id<Element>) -> Question {
+    let refdes = board.circuit.refdes(element);
+    Question {
+        answer: format!("[parts.{refdes}] fitted = false, or ohms = 0.0 where it is closed"),
+        at: refdes,
+        asks: "is it closed?",
+    }
+}
+
 /// Which logic family drives the inputs of this array?
 pub(crate) fn driver_family(site: &Site<'_>, reference: Option<Id<Net>>) -> Question {
     let part = site.driving_part();
@@ -105,11 +129,7 @@ pub(crate) fn driver_family(site: &Site<'_>, reference: Option<Id<Net>>) -> Ques
             asks: "which logic family?",
             answer: format!("[parts.{}] driver = \"…\"", board.circuit.refdes(part)),
         },
-        (None, Some(net)) => Question {
-            at: board.circuit.net_name(net),
-            asks: "how far may it shift?",
-            answer: format!("[nets.{}] shift_v = …", board.circuit.net_name(net)),
-        },
+        (None, Some(net)) => shift_of(board, net),
         (None, None) => inputs_of(site),
     }
 }
