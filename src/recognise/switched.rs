@@ -8,6 +8,7 @@ use crate::base::table::Id;
 use crate::circuit::model::{Circuit, Net};
 use crate::connect::graph::Connectivity;
 use crate::connect::link::LinkKind;
+use crate::connect::paths::At;
 use crate::connect::rail_name::{NameSays, read};
 
 use super::nature::{Nature, Natures};
@@ -37,15 +38,19 @@ pub(crate) fn switched_nodes(
         let arrays =
             connectivity.pins(net).iter().filter(|pin| matches!(natures.of(pin.element), Nature::Array(_))).count();
         let blocks = connectivity.pins(net).iter().any(|pin| natures.kind(pin.element).is_foreign());
-        let links = || connectivity.hops(net).map(|hop| (connectivity.link(hop.link).kind, hop.to));
+        let links = || connectivity.hops(net).map(|hop| connectivity.link(hop.link).kind);
         let harmless = |kind: LinkKind| {
             kind.is_load()
                 || matches!(kind, LinkKind::Resistor(_) | LinkKind::Diode | LinkKind::Schottky | LinkKind::Zener(_))
         };
-        arrays == 1
-            && !blocks
-            && links().all(|(kind, _)| harmless(kind))
-            && links().any(|(kind, to)| kind.is_load() && alike(name, says(to)))
+        let passes =
+            |kind: LinkKind| kind.is_load() || kind.is_low_resistance() || matches!(kind, LinkKind::Resistor(_));
+        let supply = || {
+            let at = |at: Id<Net>| if at == net || says(at) == NameSays::Signal { At::On } else { At::End };
+            let reach = connectivity.reach(net, |link, _| passes(link.kind), at);
+            reach.nets.into_iter().skip(1).any(|other| alike(name, says(other)))
+        };
+        arrays == 1 && !blocks && links().all(harmless) && links().any(LinkKind::is_load) && supply()
     };
     let mut nodes: Vec<Id<Net>> = circuit.nets.ids().filter(|net| outputs.contains(net) && is_node(*net)).collect();
     nodes.sort_unstable();

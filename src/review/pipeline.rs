@@ -26,7 +26,7 @@ use crate::parts::library::Library;
 use crate::parts::pins::Role;
 use crate::recognise::array::Sanity;
 use crate::recognise::board::Board;
-use crate::recognise::definition::closed;
+use crate::recognise::definition::{Known, known};
 use crate::recognise::find::{Found, find};
 use crate::recognise::links::links;
 use crate::recognise::nature::Natures;
@@ -64,7 +64,7 @@ pub(super) fn shelf() -> (&'static [Card], &'static [Notice]) {
 pub(super) fn net_names(input: Input) -> Vec<String> {
     let Input { mut sources, root, .. } = input;
     let Ok(program) = circuit::load(&mut sources, &[root], &[], &Limits::BOARD) else { return Vec::new() };
-    let closed = closed(&program, &rules().library);
+    let closed = known(&program, &sources, &rules().library).closed;
     let Some(&board) = circuit::boards(&program, &closed).first() else { return Vec::new() };
     match circuit::expand(&program, &sources, board, &closed, &Limits::BOARD) {
         Ok(Expanded { circuit, .. }) => circuit
@@ -108,7 +108,7 @@ pub(super) fn run(name: &str, input: Input, held: bool) -> Vec<Review> {
             return vec![Review { sources: Arc::new(sources), ..Review::unreadable(name.to_owned(), *notice) }];
         }
     };
-    let closed = closed(&program, &rules.library);
+    let Known { closed, built_like } = known(&program, &sources, &rules.library);
     let boards = circuit::boards(&program, &closed);
     let sources = Arc::new(sources);
     notices.extend(program.notices.iter().cloned());
@@ -131,7 +131,7 @@ pub(super) fn run(name: &str, input: Input, held: bool) -> Vec<Review> {
                 Ok(expanded) => {
                     review.read_in_part = expanded.circuit.unread_lines > 0 || program.missing_files > 0;
                     if review.error.is_none() {
-                        judge_board(rules, expanded, &noted.1, held, &mut review);
+                        judge_board(rules, expanded, &noted.1, &built_like, held, &mut review);
                     }
                 }
                 Err(notice) => review.error = Some(*notice),
@@ -141,8 +141,15 @@ pub(super) fn run(name: &str, input: Input, held: bool) -> Vec<Review> {
         .collect()
 }
 
-/// Judges one flat circuit into `review`.
-fn judge_board(rules: &Rules, expanded: Expanded, notes: &Notes, held: bool, review: &mut Review) {
+/// Judges one flat circuit into `review`. `built_like` names closed definitions that are built like an array.
+fn judge_board(
+    rules: &Rules,
+    expanded: Expanded,
+    notes: &Notes,
+    built_like: &[String],
+    held: bool,
+    review: &mut Review,
+) {
     let Expanded { circuit, notices } = expanded;
     review.problems.extend(notices);
     let directory = has_names(notes).then(|| Directory::of(&circuit));
@@ -207,7 +214,7 @@ fn judge_board(rules: &Rules, expanded: Expanded, notes: &Notes, held: bool, rev
             &mut judged,
         );
     }
-    for (element, profile) in board.near_arrays() {
+    for (element, profile) in board.near_arrays(built_like) {
         let mut slots = Vec::new();
         facts::part::Part::near(&board, element, profile).into_slots(&mut slots);
         judge.subject(

@@ -169,9 +169,8 @@ fn partial(site: &Site<'_>) -> (Vec<String>, Vec<String>) {
     if !is_whole(site) {
         return (open, words);
     }
-    let kinds: [(fn(Role) -> bool, &str); 2] =
-        [(|role| role == Role::Emitter, "ground pins"), (|role| matches!(role, Role::Clamp(_)), "clamp pins")];
-    for (kind, name) in kinds {
+    for name in ["ground pins", "clamp pins"] {
+        let kind = |role| if name == "ground pins" { role == Role::Emitter } else { matches!(role, Role::Clamp(_)) };
         let pins: Vec<&ArrayPin> = site.array.pins_of(kind).collect();
         let (lone, tied): (Vec<&ArrayPin>, Vec<&ArrayPin>) = pins.iter().partition(|pin| is_open(site.board, pin.net));
         let needed = |pin: &&&ArrayPin| pin.role == Role::Emitter || serves_a_coil(site, pin);

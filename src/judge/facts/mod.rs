@@ -77,7 +77,7 @@ pub(crate) fn load(site: &Site<'_>, channel: &ChannelSite<'_>, load: &Load, ways
     let mut slots = Vec::with_capacity(turn_off::TurnOff::DEFS.len() + supply::Feed::DEFS.len());
     turn_off::TurnOff::of(site, channel, load, ways).into_slots(&mut slots);
     // Cause before effect: what a load without a supply would do is not judged.
-    if supply::is_stranded(site, load) {
+    if supply::is_stranded(site, channel, load) {
         let reason = format!("{} gets no current as drawn", ask::load_name(site.board, load));
         for slot in slots.iter_mut().filter(|slot| !matches!(slot.value, FactValue::Text(_) | FactValue::Texts(_))) {
             *slot = Fact::reason(reason.clone(), None);

@@ -115,8 +115,8 @@ fn emitter_is_negative(site: &Site<'_>) -> bool {
 }
 
 /// Whether no supply reaches the load, or it lies between output and return.
-pub(crate) fn is_stranded(site: &Site<'_>, load: &Load) -> bool {
-    matches!(load.supply, Supply::None(_)) || (matches!(load.supply, Supply::Return(_)) && !emitter_is_negative(site))
+pub(crate) fn is_stranded(site: &Site<'_>, channel: &ChannelSite<'_>, load: &Load) -> bool {
+    matches!(load.supply, Supply::None(_)) || to_return(site, channel, load).is(true)
 }
 
 fn fed(site: &Site<'_>, load: &Load) -> Fact {
