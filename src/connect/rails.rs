@@ -101,7 +101,11 @@ impl Rails {
         let mut found = Self { roles: vec![Role::Signal; circuit.nets.len()], rails: Table::new() };
         for (id, net) in circuit.nets.iter() {
             let note = notes.binary_search_by_key(&id, |(net, _)| *net).ok().map(|at| &notes[at].1);
-            let says = rail_name::read(circuit.names.text(net.name));
+            let text = circuit.names.text(net.name);
+            let mut says = rail_name::read(text);
+            if rail_name::is_letter(text) && (net.sheet.index() > 0 || connectivity.pins(id).len() < RETURN_PINS) {
+                says = NameSays::Signal;
+            }
             let role = found.role_of(id, says, potentials[id.index()], note, &floating_returns);
             found.roles[id.index()] = role;
         }
@@ -238,6 +242,9 @@ fn settled(level: Level, name: Volts) -> Option<Level> {
         (false, false) => None,
     }
 }
+
+/// A net whose name is a single letter is a return only from this many pins on: `M` is also the middle of something.
+const RETURN_PINS: usize = 4;
 
 /// A moving source and a rail's name agree within this share: a ramp overshoots less, a driver's swing is another voltage.
 const NEAR_NAME: f64 = 0.2;

@@ -68,6 +68,8 @@ impl Maker<'_> {
                 self.add(id, 0, 1, LinkKind::Solenoid);
             }
             PartClass::Resistor => self.add(id, 0, 1, self.resistor(id, element)),
+            // Y is a valve as well as a crystal: a type that is known decides.
+            PartClass::Crystal if kind.by_type => self.by_family(id, element, kind),
             PartClass::Capacitor | PartClass::Crystal => self.add(id, 0, 1, LinkKind::Capacitor),
             PartClass::Inductor => self.add(id, 0, 1, LinkKind::Inductor),
             PartClass::Diode | PartClass::Led => self.diode(id, element, kind),

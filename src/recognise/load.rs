@@ -7,6 +7,7 @@ use crate::base::table::Id;
 use crate::circuit::model::{Element, Net};
 use crate::connect::graph::Pin;
 use crate::connect::link::{Link, LinkKind};
+use crate::parts::family::FamilyKind;
 
 use super::board::Board;
 use super::branch::{Branch, Branches, End};
@@ -224,6 +225,9 @@ fn as_load(board: &Board<'_>, branch: &Branch, row: usize) -> Option<Load> {
     let supply = match branch.end {
         // A net that is a rail by its copper bears another name: the rail's own says more.
         End::Rail(net) if into => Supply::Rail(board.rails.rail(net).map_or(net, |rail| rail.net)),
+        End::Part(pin) if into && sourced_rail(board, pin).is_some() => {
+            sourced_rail(board, pin).map_or(Supply::Unknown, Supply::Rail)
+        }
         End::Connector(_) | End::Part(_) | End::Port(_) | End::Unnamed(_) if into => Supply::Maybe(branch.path.end),
         // The base or gate of a transistor is no dead end.
         End::Nowhere(net) if controls(board, net) => Supply::Maybe(net),
@@ -264,6 +268,18 @@ fn as_load(board: &Board<'_>, branch: &Branch, row: usize) -> Option<Load> {
 /// Whether the net holds a transistor's base or gate.
 fn controls(board: &Board<'_>, net: Id<Net>) -> bool {
     board.connectivity.hops(net).any(|hop| board.connectivity.link(hop.link).kind == LinkKind::Control)
+}
+
+/// The rail that an array of sources passes on at `pin`: the only one at the part.
+fn sourced_rail(board: &Board<'_>, pin: Pin) -> Option<Id<Net>> {
+    if board.natures.kind(pin.element).family_kind() != Some(FamilyKind::SourceArray) {
+        return None;
+    }
+    let mut rails: Vec<Id<Net>> =
+        board.circuit.pins(pin.element).iter().filter_map(|&net| board.rails.rail(net)).map(|rail| rail.net).collect();
+    rails.sort_unstable();
+    rails.dedup();
+    if let [rail] = rails[..] { Some(rail) } else { None }
 }
 
 /// The elements that name a load: what does work, and the resistors beside it.
