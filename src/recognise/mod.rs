@@ -20,4 +20,5 @@ pub(crate) mod pins;
 pub(crate) mod returns;
 pub(crate) mod sanity;
 pub(crate) mod site;
+pub(crate) mod sourced;
 pub(crate) mod turn_off;
