@@ -220,13 +220,19 @@ impl<'a> Board<'a> {
         }
     }
 
+    /// A pin in a sentence: `pin 8`, with the port's name where the netlist gives one: `pin E`.
+    pub(crate) fn pin_words(&self, pin: Pin) -> String {
+        format!("pin {}", self.pin_label(pin))
+    }
+
     /// Whether a person gave the net its name, not an exporter.
     pub(crate) fn has_given_name(&self, net: Id<Net>) -> bool {
         is_given(self.circuit.names.text(self.circuit.nets[net].name))
     }
 
-    /// Parts whose type is nearly that of a sink array and that no profile, family or look-alike knows.
-    pub(crate) fn near_arrays(&self) -> Vec<(Id<Element>, &'a Profile)> {
+    /// Parts that look like sink arrays and that no profile, family or look-alike knows: by a type that is nearly an
+    /// array's, or by a definition that is built like one, named in `built_like`.
+    pub(crate) fn near_arrays(&self, built_like: &[String]) -> Vec<(Id<Element>, &'a Profile)> {
         let mut known: FxHashMap<Name, Option<&'a Profile>> = FxHashMap::default();
         let mut near = Vec::new();
         for (id, element) in self.circuit.elements.iter() {
@@ -236,7 +242,13 @@ impl<'a> Board<'a> {
             if !matches!(self.natures.of(id), Nature::Block) {
                 continue;
             }
-            let found = known.entry(part_type).or_insert_with(|| self.library.near(self.circuit.names.text(part_type)));
+            let found = known.entry(part_type).or_insert_with(|| {
+                let text = self.circuit.names.text(part_type);
+                let like = || built_like.iter().any(|name| name.eq_ignore_ascii_case(text));
+                // The usual arrays of seven and of eight: the nearest to what is known of the body.
+                let usual = if element.pin_count > SEVEN_CHANNEL_PINS { "x2803" } else { "x2003" };
+                self.library.near(text).or_else(|| like().then(|| self.library.profile(usual)).flatten())
+            });
             near.extend(found.map(|profile| (id, profile)));
         }
         near
@@ -269,6 +281,9 @@ impl<'a> Board<'a> {
         self.circuit.pins(pin.element)[usize::from(pin.index)]
     }
 }
+
+/// Pins of an array of seven: inputs, outputs, emitter and clamp pin.
+const SEVEN_CHANNEL_PINS: u16 = 16;
 
 /// Pins of one net that are looked at; supply nets have more, and nobody walks there.
 const MAX_PINS_AT_NET: usize = 200;

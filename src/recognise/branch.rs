@@ -55,6 +55,11 @@ impl Branches {
     /// Follows everything that hangs on `output`.
     pub(crate) fn of(board: &Board<'_>, output: Id<Net>) -> Self {
         let connectivity = board.connectivity;
+        // On a rail or a return there is nothing to follow: what else is there is not this output's.
+        if let Some(end) = tie(board, output) {
+            let path = Path { hops: SmallVec::new(), end: output, dead_end: false };
+            return Self { list: vec![Branch { path, end }], cut: false };
+        }
         let at = |net: Id<Net>| {
             if connectivity.same(net, output) {
                 // Joined copper is still the output: its other channels are a parallel group, not an end.
@@ -92,10 +97,9 @@ fn ends<'b>(board: &'b Board<'_>, output: Id<Net>, path: &Path) -> SmallVec<[End
         return SmallVec::from_slice(&[End::Nowhere(net)]);
     }
     let mut ends = SmallVec::new();
-    match board.rails.role(net) {
-        Role::Rail(_) => ends.push(End::Rail(net)),
-        Role::Return(_) => ends.push(End::Return(net)),
-        Role::Signal => match board.channel_at_output(net) {
+    match tie(board, net) {
+        Some(end) => ends.push(end),
+        None => match board.channel_at_output(net) {
             Some((array, channel)) if !board.connectivity.same(net, output) => ends.push(End::Output(array, channel)),
             _ => ends.extend(ends_at(board, net)),
         },
@@ -104,6 +108,15 @@ fn ends<'b>(board: &'b Board<'_>, output: Id<Net>, path: &Path) -> SmallVec<[End
         ends.push(End::Unnamed(net));
     }
     ends
+}
+
+/// The end that a rail or a return is.
+fn tie(board: &Board<'_>, net: Id<Net>) -> Option<End> {
+    match board.rails.role(net) {
+        Role::Rail(_) => Some(End::Rail(net)),
+        Role::Return(_) => Some(End::Return(net)),
+        Role::Signal => None,
+    }
 }
 
 fn ends_at<'b>(board: &'b Board<'_>, net: Id<Net>) -> impl Iterator<Item = End> + 'b {

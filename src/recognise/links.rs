@@ -63,6 +63,10 @@ impl Maker<'_> {
             return self.relay(id, kind);
         }
         match kind.class {
+            // Y is a crystal in one country and a valve in another: the type decides.
+            PartClass::Crystal if matches!(kind.family_kind(), Some(FamilyKind::Solenoid | FamilyKind::Valve)) => {
+                self.add(id, 0, 1, LinkKind::Solenoid);
+            }
             PartClass::Resistor => self.add(id, 0, 1, self.resistor(id, element)),
             // Y is a valve as well as a crystal: a type that is known decides.
             PartClass::Crystal if kind.by_type => self.by_family(id, element, kind),

@@ -10,7 +10,8 @@ use crate::connect::link::{Link, LinkKind};
 
 use super::board::Board;
 use super::branch::{Branch, Branches, End};
-use super::sourced::sourced_rail;
+use super::sourced::{controls, sourced_rail};
+use super::stub::stubs;
 
 /// A load of one channel.
 #[derive(Clone, Debug)]
@@ -132,7 +133,7 @@ impl LoadKind {
 impl Hanging {
     /// Sorts what hangs on `output`. `watched`: an input of another array or a known receiver shares its copper.
     pub(crate) fn of(board: &Board<'_>, output: Id<Net>) -> Self {
-        let branches = Branches::of(board, output);
+        let mut branches = Branches::of(board, output);
         let mut hanging = Self::default();
         hanging.collect_pins(board, &branches, output);
         let watched = !hanging.receivers.is_empty() || board.is_input(output);
@@ -145,6 +146,11 @@ impl Hanging {
             } else if is_suppressor(board, branch) {
                 hanging.suppressors.push(row);
             }
+        }
+        for stub in stubs(board, &branches, &loads) {
+            branches.list.push(stub);
+            let row = branches.list.len() - 1;
+            loads.extend(as_load(board, &branches.list[row], row));
         }
         drop_lesser(board, &branches, &mut loads);
         hanging.branches = branches;
@@ -214,14 +220,17 @@ fn kind_of(board: &Board<'_>, branch: &Branch) -> Option<LoadKind> {
 /// The load that one path makes, if it makes one.
 fn as_load(board: &Board<'_>, branch: &Branch, row: usize) -> Option<Load> {
     let kind = kind_of(board, branch)?;
-    let led_reversed = branch.blocked_by_led_only(board);
+    let led_reversed = branch.blocked_by_led_only(board) && !matches!(branch.end, End::Return(_));
     let into = branch.conducts_in(board) || led_reversed;
     let supply = match branch.end {
-        End::Rail(net) if into => Supply::Rail(net),
+        // A net that is a rail by its copper bears another name: the rail's own says more.
+        End::Rail(net) if into => Supply::Rail(board.rails.rail(net).map_or(net, |rail| rail.net)),
         End::Part(pin) if into && sourced_rail(board, pin).is_some() => {
             sourced_rail(board, pin).map_or(Supply::Unknown, Supply::Rail)
         }
         End::Connector(_) | End::Part(_) | End::Port(_) | End::Unnamed(_) if into => Supply::Maybe(branch.path.end),
+        // The base or gate of a transistor is no dead end.
+        End::Nowhere(net) if controls(board, net) => Supply::Maybe(net),
         End::Nowhere(net) => Supply::None(net),
         End::Return(net) if branch.conducts_out(board) => {
             // From 1 kohm on a resistor to the return is a pull-down or a divider, no load.

@@ -1,8 +1,9 @@
-//! Loads between an array of sources and an array of sinks, as in a matrix: the rail is the one behind the sources.
+//! What may feed a load's far end besides a rail: an array of sources as in a matrix, a transistor.
 
 use crate::base::table::Id;
 use crate::circuit::model::Net;
 use crate::connect::graph::Pin;
+use crate::connect::link::LinkKind;
 use crate::parts::family::FamilyKind;
 
 use super::board::Board;
@@ -17,4 +18,9 @@ pub(super) fn sourced_rail(board: &Board<'_>, pin: Pin) -> Option<Id<Net>> {
     rails.sort_unstable();
     rails.dedup();
     if let [rail] = rails[..] { Some(rail) } else { None }
+}
+
+/// Whether the net holds a transistor's base or gate.
+pub(super) fn controls(board: &Board<'_>, net: Id<Net>) -> bool {
+    board.connectivity.hops(net).any(|hop| board.connectivity.link(hop.link).kind == LinkKind::Control)
 }

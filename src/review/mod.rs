@@ -3,6 +3,7 @@
 mod input;
 mod known;
 mod pipeline;
+mod silence;
 mod subjects;
 mod summary;
 

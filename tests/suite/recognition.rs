@@ -11,7 +11,8 @@ fn judged(netlist: &str) -> Vec<Value> {
     let file = folder.path().join("board.cir");
     fs::write(&file, netlist).expect("the board can be written");
     let mut out = Vec::new();
-    write_reviews(&mut out, review(&file, &Options::default()).into_iter(), Format::Json, Look::default()).expect("JSON is written");
+    write_reviews(&mut out, review(&file, &Options::default()).into_iter(), Format::Json, Look::default())
+        .expect("JSON is written");
     let report: Value = serde_json::from_slice(&out).expect("it is JSON");
     report["boards"].as_array().cloned().unwrap_or_default()
 }
@@ -29,7 +30,8 @@ fn seen(netlist: &str) -> Vec<String> {
                     .into_iter()
                     .flatten()
                     .map(|load| {
-                        let elements: Vec<String> = load["elements"].as_array().into_iter().flatten().map(text).collect();
+                        let elements: Vec<String> =
+                            load["elements"].as_array().into_iter().flatten().map(text).collect();
                         format!("{} {}@{}", text(&load["kind"]), elements.join("+"), text(&load["supply"]))
                     })
                     .collect();

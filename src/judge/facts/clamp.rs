@@ -120,6 +120,12 @@ impl Series {
 /// A clamp pin on a return through copper or next to nothing; a search from the pin that stops at rails.
 fn on_return(site: &Site<'_>, clamps: &[&ArrayPin]) -> Fact {
     let board = site.board;
+    // With the emitter pin on a negative rail the return is the loads' supply: the clamp pin belongs there.
+    let negative =
+        |net: Id<Net>| board.rails.rail(net).and_then(|rail| rail.level).is_some_and(|level| level.nominal.0 < 0.0);
+    if site.array.emitters().any(|pin| negative(pin.net)) {
+        return Fact::flag(false);
+    }
     for pin in clamps {
         let reach = board.connectivity.reach(
             pin.net,
@@ -145,6 +151,14 @@ fn fed(site: &Site<'_>, clamps: &[&ArrayPin]) -> Fact {
     for pin in clamps {
         let net = pin.net;
         if !board.rails.is_signal(net) || board.may_lead_on(net) || board.circuit.nets[net].global {
+            return Fact::flag(true);
+        }
+        // A switch, a zener or a transistor there is a lamp test or a clamp towards the return: somebody meant it.
+        let meant = board.connectivity.hops(net).any(|hop| {
+            let kind = board.connectivity.link(hop.link).kind;
+            matches!(kind, LinkKind::Switch | LinkKind::Zener(_) | LinkKind::Suppressor(_) | LinkKind::Transistor)
+        });
+        if meant {
             return Fact::flag(true);
         }
         if let Some(gap) = ask::unread(board, net) {

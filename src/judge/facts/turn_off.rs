@@ -58,7 +58,11 @@ impl TurnOff {
             inductive: inductive(site, load),
             turn_off_path: turn_off_path(site, channel, ways),
             turn_off_by: Fact::text(ways.list.first().map_or("nothing", |way| by_words(way.by))),
-            clamped: Fact::flag(ways.by_clamp().any(|way| !matches!(way.target, Target::Perhaps(_)))),
+            // A load between output and return has its supply through a pull-up: the clamp pin is not its business.
+            clamped: Fact::flag(
+                !matches!(load.supply, Supply::Return(_))
+                    && ways.by_clamp().any(|way| !matches!(way.target, Target::Perhaps(_))),
+            ),
             clamp_net: match site.array.clamp_of(channel.channel) {
                 Some(pin) => Fact::text(board.circuit.net_name(pin.net)).at(site.array.span, "the array"),
                 None => Fact::text(""),
