@@ -7,10 +7,10 @@ use crate::base::table::Id;
 use crate::circuit::model::{Element, Net};
 use crate::connect::graph::Pin;
 use crate::connect::link::{Link, LinkKind};
-use crate::parts::family::FamilyKind;
 
 use super::board::Board;
 use super::branch::{Branch, Branches, End};
+use super::sourced::{controls, sourced_rail};
 use super::stub::stubs;
 
 /// A load of one channel.
@@ -263,23 +263,6 @@ fn as_load(board: &Board<'_>, branch: &Branch, row: usize) -> Option<Load> {
         at_net: None,
         led_reversed,
     })
-}
-
-/// Whether the net holds a transistor's base or gate.
-fn controls(board: &Board<'_>, net: Id<Net>) -> bool {
-    board.connectivity.hops(net).any(|hop| board.connectivity.link(hop.link).kind == LinkKind::Control)
-}
-
-/// The rail that an array of sources passes on at `pin`: the only one at the part.
-fn sourced_rail(board: &Board<'_>, pin: Pin) -> Option<Id<Net>> {
-    if board.natures.kind(pin.element).family_kind() != Some(FamilyKind::SourceArray) {
-        return None;
-    }
-    let mut rails: Vec<Id<Net>> =
-        board.circuit.pins(pin.element).iter().filter_map(|&net| board.rails.rail(net)).map(|rail| rail.net).collect();
-    rails.sort_unstable();
-    rails.dedup();
-    if let [rail] = rails[..] { Some(rail) } else { None }
 }
 
 /// The elements that name a load: what does work, and the resistors beside it.

@@ -278,8 +278,11 @@ impl Reference {
     /// `net` as the reference of the block `by`.
     fn of_part(board: &Board<'_>, net: Id<Net>, by: Id<Element>) -> Self {
         let rails = board.circuit.pins(by).iter().filter(|&&net| board.rails.rail(net).is_some());
-        let negatives: Option<Vec<Id<Net>>> =
-            rails.map(|&rail| if let Negative::Net(net) = negative(board, rail) { Some(net) } else { None }).collect();
+        let known = |&rail: &Id<Net>| match negative(board, rail) {
+            Negative::Net(net) | Negative::Likely(net) => Some(net),
+            Negative::Unknown => None,
+        };
+        let negatives: Option<Vec<Id<Net>>> = rails.map(known).collect();
         // With one supply in the dark nobody can say that the part moves as a whole.
         Self { net, by, analogue: false, supplies: negatives.unwrap_or_default() }
     }

@@ -269,10 +269,10 @@ fn amps(
     assumptions: &mut Vec<Arc<Assumed>>,
 ) -> Result<Option<Interval>, Fact> {
     let Supply::Rail(net) = load.supply else { return Ok(None) };
-    if let Negative::Net(other) = negative(board, net) {
-        if !board.connectivity.same(other, root) {
-            return Ok(None);
-        }
+    if let Negative::Net(other) = negative(board, net)
+        && !board.connectivity.same(other, root)
+    {
+        return Ok(None);
     }
     let Some(ohms) = load.ohms.filter(|ohms| ohms.0 > 0.0) else { return Err(Fact::ask(ask::load_ohms(board, load))) };
     let volts = rail_volts(board, net);

@@ -182,20 +182,33 @@ fn share(a: Volts, b: Volts) -> f64 {
     if lower > 0.0 { (a.0 - b.0).abs() / lower } else { 0.0 }
 }
 
-/// A capacitor from the rail, or from behind a ferrite or fuse of it, to a return.
+/// A capacitor to a return, on the rail or behind a ferrite, fuse, small resistor or diode of it. A resistor that damps
+/// the capacitor counts as part of it.
 fn is_bypassed(board: &Board<'_>, rail: Id<Net>) -> bool {
     let near = board.connectivity.reach(
         rail,
-        |link, _| link.kind.is_low_resistance(),
+        |link, forward| {
+            link.kind.is_low_resistance() || matches!(link.kind, LinkKind::Diode | LinkKind::Schottky) && forward
+        },
         |net| if board.rails.is_return(net) { At::End } else { At::On },
     );
+    let to_return =
+        |net: Id<Net>| {
+            board.rails.is_return(net)
+                || board.connectivity.hops(net).take(MAX_DAMPERS).any(|hop| {
+                    board.rails.is_return(hop.to) && board.connectivity.link(hop.link).kind.is_low_resistance()
+                })
+        };
     near.nets.iter().filter(|&&net| !board.rails.is_return(net)).any(|&net| {
         board
             .connectivity
             .hops(net)
-            .any(|hop| board.connectivity.link(hop.link).kind == LinkKind::Capacitor && board.rails.is_return(hop.to))
+            .any(|hop| board.connectivity.link(hop.link).kind == LinkKind::Capacitor && to_return(hop.to))
     })
 }
+
+/// Links behind a capacitor that are looked at for the resistor that damps it.
+const MAX_DAMPERS: usize = 8;
 
 /// Two rails of known voltage that something of next to no resistance joins.
 #[derive(Clone, Debug)]
