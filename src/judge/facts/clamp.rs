@@ -10,6 +10,7 @@ use crate::recognise::array::ArrayPin;
 use crate::recognise::board::Board;
 use crate::recognise::load::{Load, Supply};
 use crate::recognise::site::Site;
+use crate::recognise::turn_off::Target;
 
 use super::ask;
 
@@ -38,7 +39,13 @@ impl Clamp {
         let clamps: Vec<&ArrayPin> = site.array.clamps().collect();
         let names: Vec<String> = clamps.iter().map(|pin| board.circuit.net_name(pin.net)).collect();
         let loads = || site.channels.iter().flat_map(|channel| &channel.hanging.loads);
-        let series = clamps.iter().find_map(|pin| Series::of(site, pin.net));
+        // At the coils' own supply nothing lies between, whatever comes before both.
+        let at_supply = site.channels.iter().all(|channel| {
+            channel.loads().filter(|(load, _)| load.kind.is_inductive() == Some(true)).all(|(_, ways)| {
+                ways.by_clamp().any(|way| way.target == Target::OtherEnd && way.path.hops.is_empty())
+            })
+        });
+        let series = if at_supply { None } else { clamps.iter().find_map(|pin| Series::of(site, pin.net)) };
         let current: Option<f64> =
             loads().filter(|load| load.kind.is_inductive() == Some(true)).map(|load| amps(board, load)).sum();
         let ohms = series.as_ref().map_or(Some(0.0), |series| series.ohms);
