@@ -66,6 +66,8 @@ impl<'s> Judge<'s> {
         card.holds.slots(&mut read);
         card.applies.slots(&mut read);
         let (class, class_gaps) = class_of(card, view);
+        let mut waits = in_the_way.clone();
+        waits.extend(class_gaps.into_iter().filter(|slot| !in_the_way.contains(slot)));
         let render = |template: &super::template::Template| {
             template
                 .render(vocabulary, view, &card.limits)
@@ -94,7 +96,7 @@ impl<'s> Judge<'s> {
             verdict,
             message,
             why: render(&card.why),
-            missing: in_the_way.iter().chain(&class_gaps).map(|&slot| missing(vocabulary, view, slot)).collect(),
+            missing: waits.iter().map(|&slot| missing(vocabulary, view, slot)).collect(),
             evidence,
             numbers: shown.iter().filter_map(|&slot| shown_number(vocabulary, view, slot)).collect(),
             assumptions: assumptions(card, view, &read, verdict),

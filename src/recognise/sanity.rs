@@ -10,6 +10,7 @@ use crate::parts::pins::Role;
 
 use super::array::{ArrayPin, Sanity, WrongMap};
 use super::nature::Natures;
+use super::returns::carries_return;
 
 /// What the test looks at.
 pub(crate) struct Ground<'a, 'p> {
@@ -145,13 +146,7 @@ impl Ground<'_, '_> {
         }
         let far = self.connectivity.reach(
             net,
-            |link, _| match link.kind {
-                LinkKind::Resistor(ohms) => ohms.is_none_or(|ohms| ohms.0 <= SENSE_OHMS),
-                kind => {
-                    kind.is_low_resistance()
-                        || matches!(kind, LinkKind::Transistor | LinkKind::Switch | LinkKind::Inductor)
-                }
-            },
+            |link, _| carries_return(link.kind),
             |net| if self.rails.is_signal(net) { At::On } else { At::End },
         );
         let on = |wanted: Looks| far.nets.iter().any(|&net| self.own(net) == wanted);
@@ -201,9 +196,6 @@ impl Ground<'_, '_> {
             || self.connectivity.hops(net).any(|hop| kinds(self.connectivity.link(hop.link).kind))
     }
 }
-
-/// Up to this a resistor under an emitter pin is there to sense the current (common practice).
-const SENSE_OHMS: f64 = 100.0;
 
 /// Whether a person gave the net its name, not an exporter: `VALVE_3`, not `N001`, `N$12`, `Net-(U1-Pad3)`, `12`.
 pub(crate) fn is_given(name: &str) -> bool {

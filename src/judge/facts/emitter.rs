@@ -10,6 +10,7 @@ use crate::recognise::array::ArrayPin;
 use crate::recognise::board::Board;
 use crate::recognise::load::Supply;
 use crate::recognise::nature::Nature;
+use crate::recognise::returns::carries_return;
 use crate::recognise::site::Site;
 
 use super::ask;
@@ -103,13 +104,7 @@ fn emitter_above(site: &Site<'_>, emitters: &[&ArrayPin]) -> (Fact, Option<Id<Ne
     let mut unknown = None;
     for pin in emitters {
         let near = direct(board, pin.net, LinkKind::is_low_resistance);
-        let far = direct(board, pin.net, |kind| {
-            !kind.is_load()
-                && !matches!(
-                    kind,
-                    LinkKind::Capacitor | LinkKind::Control | LinkKind::Source(_) | LinkKind::Suppressor(_)
-                )
-        });
+        let far = direct(board, pin.net, carries_return);
         let rail_of = |reach: &Reach| {
             reach.nets.iter().copied().find(|&net| is_positive(board, net) && !is_loads_return(site, net))
         };
