@@ -88,7 +88,7 @@ impl Series {
     /// What lies between `clamp` and the nearest rail; none where it is on the rail, or a diode or zener leads there.
     fn of(site: &Site<'_>, clamp: Id<Net>) -> Option<Self> {
         let board = site.board;
-        if !board.rails.is_signal(clamp) {
+        if !board.rails.is_signal(clamp) || hang_on(site, clamp) {
             return None;
         }
         let found = board.connectivity.paths(
@@ -122,6 +122,16 @@ impl Series {
         }
         (!elements.is_empty()).then(|| Self { names: board.names_of(&elements), ohms, can_open })
     }
+}
+
+/// Whether every coil gets its current by way of the clamp pin's own copper: what opens before it opens for both.
+fn hang_on(site: &Site<'_>, clamp: Id<Net>) -> bool {
+    let same = |net: Id<Net>| site.board.connectivity.same(net, clamp);
+    let mut coils = site.channels.iter().flat_map(|channel| {
+        let loads = channel.hanging.loads.iter().filter(|load| load.kind.is_inductive() == Some(true));
+        loads.map(move |load| load.branches.iter().filter_map(|&row| channel.hanging.branches.list.get(row)))
+    });
+    coils.all(|mut ways| ways.any(|way| way.path.hops.iter().any(|hop| same(hop.to))))
 }
 
 /// A clamp pin on a return through copper or next to nothing; a search from the pin that stops at rails.
