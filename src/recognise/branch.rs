@@ -68,9 +68,7 @@ impl Branches {
             match board.rails.role(net) {
                 Role::Rail(_) | Role::Return(_) => At::End,
                 Role::Signal if board.channel_at_output(net).is_some() => At::End,
-                Role::Signal if board.foreign_pins(net).next().is_some() || board.circuit.nets[net].port => {
-                    At::EndAndOn
-                }
+                Role::Signal if board.foreign_pins(net).next().is_some() || leaves(board, net) => At::EndAndOn,
                 Role::Signal => At::On,
             }
         };
@@ -110,6 +108,11 @@ fn ends(board: &Board<'_>, output: Id<Net>, path: &Path) -> SmallVec<[End; 2]> {
     ends
 }
 
+/// A port of the board, or a net that other sheets know by its name.
+fn leaves(board: &Board<'_>, net: Id<Net>) -> bool {
+    board.circuit.nets[net].port || board.circuit.nets[net].global
+}
+
 /// The end that a rail or a return is.
 fn tie(board: &Board<'_>, net: Id<Net>) -> Option<End> {
     match board.rails.role(net) {
@@ -120,7 +123,7 @@ fn tie(board: &Board<'_>, net: Id<Net>) -> Option<End> {
 }
 
 fn ends_at<'b>(board: &'b Board<'_>, net: Id<Net>) -> impl Iterator<Item = End> + 'b {
-    let port = board.circuit.nets[net].port.then_some(End::Port(net));
+    let port = leaves(board, net).then_some(End::Port(net));
     let pins = board
         .foreign_pins(net)
         .map(|pin| if board.is_connector(pin.element) { End::Connector(pin) } else { End::Part(pin) });

@@ -1,6 +1,7 @@
 //! Switched nodes: nets that bear a supply's name and hang on an output, with the load between them and the supply.
 //!
-//! People name the low side of a fan after its supply: `12V_FAN`. Such a net is no rail.
+//! People name the low side of a fan after its supply, `12V_FAN`, and that of a motor `M`. Such a net is no rail and no
+//! return.
 
 use rustc_hash::FxHashSet;
 
@@ -16,7 +17,7 @@ use super::nature::{Nature, Natures};
 /// The switched nodes among `outputs`, the nets at outputs of arrays; sorted.
 ///
 /// A net is one where nothing feeds it, no source, capacitor or other part, and a load leads from it to another net with
-/// a supply's name of the same voltage.
+/// a supply's name of the same voltage, or any supply's name for a net `M`.
 pub(crate) fn switched_nodes(
     circuit: &Circuit,
     connectivity: &Connectivity,
@@ -31,7 +32,13 @@ pub(crate) fn switched_nodes(
     };
     let is_node = |net: Id<Net>| {
         let name = says(net);
-        if !is_rail(name) || circuit.nets[net].port || circuit.nets[net].global || connectivity.joined(net).len() > 1 {
+        // `M` is the return of a control cabinet, or simply the motor.
+        let motor = circuit.names.text(circuit.nets[net].name).eq_ignore_ascii_case("M");
+        if !(is_rail(name) || motor)
+            || circuit.nets[net].port
+            || circuit.nets[net].global
+            || connectivity.joined(net).len() > 1
+        {
             return false;
         }
         // One pin of an array, its output; a second one would be a clamp pin, and that is fed from here.
@@ -48,7 +55,11 @@ pub(crate) fn switched_nodes(
         let supply = || {
             let at = |at: Id<Net>| if at == net || says(at) == NameSays::Signal { At::On } else { At::End };
             let reach = connectivity.reach(net, |link, _| passes(link.kind), at);
-            reach.nets.into_iter().skip(1).any(|other| alike(name, says(other)))
+            reach
+                .nets
+                .into_iter()
+                .skip(1)
+                .any(|other| if motor { is_rail(says(other)) } else { alike(name, says(other)) })
         };
         arrays == 1 && !blocks && links().all(harmless) && links().any(LinkKind::is_load) && supply()
     };

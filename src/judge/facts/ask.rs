@@ -14,13 +14,14 @@ pub(crate) fn load(board: &Board<'_>, load: &Load) -> Question {
         let answer = format!("[[loads]] at = \"{}\", kind = \"…\", supply = \"…\", ohms = …", board.pin_name(pin));
         return Question { at: refdes, asks: "what load?", answer };
     }
-    let at = load_name(board, load);
-    let place = match load.supply.net() {
-        Some(net) => format!("net:{}", board.circuit.net_name(net)),
-        None => at.clone(),
-    };
-    Question {
-        answer: format!("[[loads]] at = \"{place}\", kind = \"…\", supply = \"…\""), at, asks: "what feeds it?"
+    match load.supply.net() {
+        // Asked of the net, one answer serves every load on it.
+        Some(net) => where_leads(board, net),
+        None => {
+            let at = load_name(board, load);
+            let answer = format!("[[loads]] at = \"{at}\", kind = \"…\", supply = \"…\"");
+            Question { answer, at, asks: "what feeds it?" }
+        }
     }
 }
 

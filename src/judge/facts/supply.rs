@@ -124,6 +124,8 @@ fn fed(site: &Site<'_>, load: &Load) -> Fact {
     match load.supply {
         Supply::None(net) => match ask::unread(board, net) {
             Some(gap) => Fact::default().gap(gap),
+            // One sheet of several: a name that a person gave may be a supply on another.
+            None if board.is_partial() && board.has_given_name(net) => Fact::ask(ask::where_leads(board, net)),
             None => {
                 let fact = Fact::flag(false);
                 match load.elements.first() {
