@@ -89,7 +89,7 @@ impl Branches {
 }
 
 /// The ends of a path: one, but for a net where several foreign pins meet.
-fn ends<'b>(board: &'b Board<'_>, output: Id<Net>, path: &Path) -> SmallVec<[End; 2]> {
+fn ends(board: &Board<'_>, output: Id<Net>, path: &Path) -> SmallVec<[End; 2]> {
     let net = path.end;
     if path.dead_end {
         return SmallVec::from_slice(&[End::Nowhere(net)]);

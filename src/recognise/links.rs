@@ -60,9 +60,8 @@ impl Maker<'_> {
 
     fn known(&mut self, id: Id<Element>, element: &Element, kind: &Kind<'_>) {
         let pins = usize::from(element.pin_count);
-        if matches!(kind.family_kind(), Some(FamilyKind::Relay)) && pins > 2
-            || kind.class == PartClass::Relay && pins > 2
-        {
+        let relay = kind.class == PartClass::Relay || kind.family_kind() == Some(FamilyKind::Relay);
+        if relay && pins > 2 {
             return self.relay(id, kind);
         }
         match kind.class {
@@ -221,10 +220,10 @@ impl Maker<'_> {
                 rails.entry(net).or_insert(index);
             }
         }
-        if let (&[output], 1) = (&driven[..], rails.len()) {
-            if let Some(&rail) = rails.values().next() {
-                self.add(id, rail, output, self.coil(kind));
-            }
+        if let (&[output], 1) = (&driven[..], rails.len())
+            && let Some(&rail) = rails.values().next()
+        {
+            self.add(id, rail, output, self.coil(kind));
         }
     }
 

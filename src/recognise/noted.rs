@@ -138,8 +138,8 @@ impl<'n> Noted<'n> {
             note.role = Some(NotedRole::Rail);
             note.reference = rail.says.return_net.as_ref().and_then(|said| directory.net(&said.value));
         }
-        for (&net, says) in &self.nets {
-            if let Some(role) = &says.role {
+        for noted in &notes.nets {
+            if let (Some(net), Some(role)) = (directory.net(&noted.name.value), &noted.says.role) {
                 by_net.entry(net).or_default().role = Some(match role.value {
                     NetRole::Rail => NotedRole::Rail,
                     NetRole::Return => NotedRole::Return,

@@ -221,6 +221,15 @@ pub(crate) fn could_join_outside(board: &Board<'_>, a: Id<Net>, b: Id<Net>) -> b
     inside(a, &of_b) || inside(b, &of_a)
 }
 
+/// A part of unknown insides with pins on the copper of both nets: it may join them.
+pub(crate) fn joining_part(board: &Board<'_>, a: Id<Net>, b: Id<Net>) -> Option<Id<Element>> {
+    let copper = board.connectivity.joined(a);
+    let mut parts = copper.into_iter().flat_map(|net| board.foreign_pins(net)).map(|pin| pin.element);
+    parts.find(|&part| {
+        !board.is_connector(part) && board.circuit.pins(part).iter().any(|&net| board.connectivity.same(net, b))
+    })
+}
+
 /// The nets that the drivers of an input take as their reference: return pins of driving parts, minus pins of sources.
 pub(crate) fn references(board: &Board<'_>, drivers: &Drivers) -> Vec<Id<Net>> {
     let mut nets = Vec::new();

@@ -6,13 +6,16 @@ use crate::base::table::Id;
 use crate::circuit::model::{Circuit, Element, ModelKind, Net};
 use crate::netlist::model::PartClass;
 
+/// Two nets of one transistor.
+type Pair = (Id<Net>, Id<Net>);
+
 /// How many sinks of one common emitter the flat body `circuit` has; none where it holds anything that arrays do not.
 ///
 /// A sink is a port that a pair of NPN transistors pulls to the emitter net, both collectors on it and the first one's
 /// emitter on the second one's base; or one that an n-channel transistor pulls there and a clamp diode leads out of.
 pub(crate) fn sinks(circuit: &Circuit) -> usize {
     let mut by_emitter: BTreeMap<Id<Net>, Vec<Id<Net>>> = BTreeMap::new();
-    let mut bases: BTreeMap<(Id<Net>, Id<Net>), Vec<Id<Net>>> = BTreeMap::new();
+    let mut bases: BTreeMap<Pair, Vec<Id<Net>>> = BTreeMap::new();
     let mut clamped: Vec<Id<Net>> = Vec::new();
     let mut single: Vec<(Id<Net>, Id<Net>)> = Vec::new();
     let mut first: Vec<(Id<Net>, Id<Net>)> = Vec::new();

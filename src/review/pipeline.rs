@@ -6,7 +6,6 @@ use rayon::prelude::*;
 use rustc_hash::{FxHashMap, FxHashSet};
 
 use crate::base::notice::{Notice, Severity};
-use crate::base::sources::Sources;
 use crate::base::table::Id;
 use crate::circuit::model::{Circuit, Net};
 use crate::circuit::{self, Expanded, Limits};

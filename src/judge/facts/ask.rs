@@ -96,6 +96,12 @@ pub(crate) fn returns_joined(board: &Board<'_>, a: Id<Net>, b: Id<Net>) -> Quest
     }
 }
 
+/// Does this part join these two nets?
+pub(crate) fn returns_joined_at(board: &Board<'_>, a: Id<Net>, b: Id<Net>, part: Id<Element>) -> Question {
+    let asked = returns_joined(board, a, b);
+    Question { at: format!("{} at {}", asked.at, board.circuit.refdes(part)), asks: "joined there?", ..asked }
+}
+
 /// Which return does the current of this rail come back to?
 pub(crate) fn rail_return(board: &Board<'_>, net: Id<Net>) -> Question {
     let name = board.circuit.net_name(net);

@@ -136,7 +136,7 @@ fn member_rating(site: &Site<'_>) -> Fact {
         (Some(lowest), Some(highest)) => {
             let fact = Fact::interval(Interval { low: lowest.value.0, nominal: lowest.value.0, high: highest.value.0 })
                 .source(lowest.from.text());
-            if lowest.from.is_memory() { fact.from_memory() } else { fact }
+            if lowest.from.is_memory() { fact.remembered() } else { fact }
         }
         _ => Fact::reason("the profile gives no rating of a channel", None),
     }

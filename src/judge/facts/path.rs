@@ -10,7 +10,8 @@ use crate::judge::fact::{Assumed, Fact, FactValue, Gap, Interval, facts};
 use crate::recognise::board::Board;
 use crate::recognise::load::{Load, Supply};
 use crate::recognise::returns::{
-    Negative, Reference, Shared, analogue_references, could_join_outside, driver_references, joined, negative, shared,
+    Negative, Reference, Shared, analogue_references, could_join_outside, driver_references, joined, joining_part,
+    negative, shared,
 };
 use crate::recognise::site::Site;
 
@@ -135,6 +136,9 @@ fn comes_back(board: &Board<'_>, emitter: Id<Net>, feed: &Feed) -> Fact {
     }
     if let Some(gap) = ask::unread(board, emitter).or_else(|| ask::unread(board, negative)) {
         return Fact::default().gap(gap);
+    }
+    if let Some(part) = joining_part(board, emitter, negative) {
+        return Fact::ask(ask::returns_joined_at(board, emitter, negative, part));
     }
     if could_join_outside(board, emitter, negative) {
         return Fact::default().gap(Gap::Question(ask::returns_joined(board, emitter, negative)));

@@ -70,7 +70,7 @@ impl TurnOff {
             clamp_drain: match ways.by_clamp().any(|way| way.target == Target::OtherEnd) {
                 // One rail cannot stand above itself, whatever its tolerance.
                 true => Fact::number(0.0),
-                false => drain(&supply_volts, &clamp_level, &ohms),
+                false => drained_at(site, load, drain(&supply_volts, &clamp_level, &ohms)),
             },
             levels_apart: levels_apart(site, ways, &clamp_level),
             own_diode: Fact::flag(ways.list.iter().any(|way| matches!(way.by, By::OwnDiode | By::Zener))),
@@ -176,6 +176,15 @@ fn plus(fact: Fact, volts: Option<Volts>) -> Fact {
             because: fact.because,
         },
         _ => fact,
+    }
+}
+
+/// The drain with the places that it rests on: the array, and the load's supply.
+fn drained_at(site: &Site<'_>, load: &Load, drain: Fact) -> Fact {
+    let fact = drain.at(site.array.span, "the clamp pin leads to the lower rail");
+    match load.elements.first() {
+        Some(&element) => fact.at(site.board.circuit.elements[element].span, "the load"),
+        None => fact,
     }
 }
 
