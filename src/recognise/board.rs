@@ -42,6 +42,8 @@ pub(crate) struct Board<'a> {
     outputs: FxHashMap<Id<Net>, SmallVec<[(u32, u32); 1]>>,
     inputs: FxHashMap<Id<Net>, SmallVec<[(u32, u32); 1]>>,
     coupled: Vec<Id<Element>>,
+    /// Nets at parts that are not fitted, sorted.
+    empty_places: Vec<Id<Net>>,
     several_returns: bool,
     negatives: RwLock<FxHashMap<Id<Net>, Negative>>,
 }
@@ -89,6 +91,10 @@ impl<'a> Board<'a> {
         let mut returns: Vec<Id<Net>> =
             circuit.nets.ids().filter(|&net| rails.is_return(net) && !connectivity.pins(net).is_empty()).collect();
         returns.dedup_by(|a, b| connectivity.same(*a, *b));
+        let left_out = |id: Id<Element>| !circuit.elements[id].fitted || noted.is_left_out(id);
+        let mut empty_places: Vec<Id<Net>> =
+            circuit.elements.ids().filter(|&id| left_out(id)).flat_map(|id| circuit.pins(id).iter().copied()).collect();
+        empty_places.sort_unstable();
         let several_returns = returns.iter().any(|&net| !connectivity.same(net, returns[0]));
         Self {
             circuit,
@@ -101,6 +107,7 @@ impl<'a> Board<'a> {
             outputs,
             inputs,
             coupled,
+            empty_places,
             several_returns,
             negatives: RwLock::default(),
         }
@@ -174,6 +181,11 @@ impl<'a> Board<'a> {
     /// Whether the inductor shares flux with another.
     pub(crate) fn is_coupled(&self, element: Id<Element>) -> bool {
         self.coupled.binary_search(&element).is_ok()
+    }
+
+    /// Whether a part that is not fitted has a pin on the net.
+    pub(crate) fn is_at_empty_place(&self, net: Id<Net>) -> bool {
+        self.empty_places.binary_search(&net).is_ok()
     }
 
     /// Resistance of a winding, filament or other load, from its own line or the notes.

@@ -155,6 +155,12 @@ impl Branch {
         led
     }
 
+    /// Whether a zener in series with a load is all that stands against the current: it drops its voltage and conducts.
+    pub(crate) fn drops_by_zener(&self, board: &Board<'_>) -> bool {
+        let passes = |kind: LinkKind, forward: bool| kind.passes_dc(!forward) || matches!(kind, LinkKind::Zener(_));
+        self.any(board, LinkKind::is_load) && self.links(board).all(|(link, forward)| passes(link.kind, forward))
+    }
+
     /// The links from the output on, each with whether it is walked from its `from` to its `to`.
     pub(crate) fn links<'b>(&'b self, board: &'b Board<'_>) -> impl DoubleEndedIterator<Item = (&'b Link, bool)> + 'b {
         self.path.hops.iter().map(|hop| (board.connectivity.link(hop.link), hop.forward))

@@ -30,6 +30,9 @@ pub(crate) fn links(
     maker.links
 }
 
+/// Types of diodes that are LEDs by their colour (common practice).
+const COLOURS: [&str; 8] = ["RED", "GREEN", "BLUE", "YELLOW", "WHITE", "AMBER", "ORANGE", "INFRARED"];
+
 struct Maker<'a> {
     circuit: &'a Circuit,
     natures: &'a Natures<'a>,
@@ -153,6 +156,7 @@ impl Maker<'_> {
         let model = element.model.map(|model| text(self.circuit.models[model].name));
         let word = model.or(element.part_type.map(text)).unwrap_or_default();
         word.split(|c: char| !c.is_ascii_alphabetic()).any(|part| part == "LED")
+            || COLOURS.contains(&word.as_str())
             || text(element.refdes).starts_with("LED")
     }
 

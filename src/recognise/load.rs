@@ -10,7 +10,7 @@ use crate::connect::link::{Link, LinkKind};
 
 use super::board::Board;
 use super::branch::{Branch, Branches, End};
-use super::sourced::{controls, sourced_rail};
+use super::sourced::{controls, leads_to_unfitted, sourced_rail};
 use super::stub::stubs;
 
 /// A load of one channel.
@@ -221,7 +221,7 @@ fn kind_of(board: &Board<'_>, branch: &Branch) -> Option<LoadKind> {
 fn as_load(board: &Board<'_>, branch: &Branch, row: usize) -> Option<Load> {
     let kind = kind_of(board, branch)?;
     let led_reversed = branch.blocked_by_led_only(board) && !matches!(branch.end, End::Return(_));
-    let into = branch.conducts_in(board) || led_reversed;
+    let into = branch.conducts_in(board) || led_reversed || branch.drops_by_zener(board);
     let supply = match branch.end {
         // A net that is a rail by its copper bears another name: the rail's own says more.
         End::Rail(net) if into => Supply::Rail(board.rails.rail(net).map_or(net, |rail| rail.net)),
@@ -231,6 +231,8 @@ fn as_load(board: &Board<'_>, branch: &Branch, row: usize) -> Option<Load> {
         End::Connector(_) | End::Part(_) | End::Port(_) | End::Unnamed(_) if into => Supply::Maybe(branch.path.end),
         // The base or gate of a transistor is no dead end.
         End::Nowhere(net) if controls(board, net) => Supply::Maybe(net),
+        // A resistor that leads to a test point or to a place without a part is no load.
+        End::Nowhere(net) if kind == LoadKind::Resistor && leads_to_unfitted(board, net) => return None,
         End::Nowhere(net) => Supply::None(net),
         End::Return(net) if branch.conducts_out(board) => {
             // From 1 kohm on a resistor to the return is a pull-down or a divider, no load.

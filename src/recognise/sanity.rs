@@ -2,9 +2,9 @@
 
 use crate::base::table::Id;
 use crate::circuit::model::{Circuit, Net};
-use crate::connect::graph::Connectivity;
+use crate::connect::graph::{Connectivity, Hop};
 use crate::connect::link::LinkKind;
-use crate::connect::paths::At;
+use crate::connect::paths::{At, Reach};
 use crate::connect::rails::{Rails, Role as NetRole};
 use crate::parts::pins::Role;
 
@@ -144,21 +144,13 @@ impl Ground<'_, '_> {
         if near != Looks::Other {
             return near;
         }
-        let far = self.connectivity.reach(
-            net,
-            |link, _| carries_return(link.kind),
-            |net| if self.rails.is_signal(net) { At::On } else { At::End },
-        );
+        let far = self.reach(net, carries_return);
         let on = |wanted: Looks| far.nets.iter().any(|&net| self.own(net) == wanted);
         if on(Looks::Return) && !on(Looks::Rail) { Looks::Return } else { Looks::Other }
     }
 
     fn looks(&self, net: Id<Net>) -> Looks {
-        let reach = self.connectivity.reach(
-            net,
-            |link, _| link.kind.is_low_resistance(),
-            |net| if self.rails.is_signal(net) { At::On } else { At::End },
-        );
+        let reach = self.reach(net, LinkKind::is_low_resistance);
         reach.nets.iter().map(|&net| self.own(net)).find(|&looks| looks != Looks::Other).unwrap_or(Looks::Other)
     }
 
@@ -174,26 +166,47 @@ impl Ground<'_, '_> {
         }
     }
 
-    /// Something that does work hangs on the net, directly or behind a resistor.
+    /// Something that does work lies between the net and a supply, a resistor in series at most, and would draw current
+    /// into the net.
     fn loaded(&self, net: Id<Net>) -> bool {
-        let works =
-            |net: Id<Net>| self.connectivity.hops(net).any(|hop| self.connectivity.link(hop.link).kind.is_load());
-        works(net)
-            || self.connectivity.hops(net).any(|hop| {
-                matches!(self.connectivity.link(hop.link).kind, LinkKind::Resistor(_))
-                    && self.rails.is_signal(hop.to)
-                    && works(hop.to)
-            })
+        let link = |hop: &Hop| self.connectivity.link(hop.link).kind;
+        let resistive = |kind: LinkKind| matches!(kind, LinkKind::Resistor(_)) || kind.is_low_resistance();
+        let supplied = |net: Id<Net>| {
+            let reach = self.reach(net, |kind| resistive(kind) || kind.is_load());
+            reach.nets.iter().any(|&net| self.own(net) == Looks::Rail)
+        };
+        let works = |net: Id<Net>| {
+            self.connectivity
+                .hops(net)
+                .any(|hop| link(&hop).is_load() && link(&hop).passes_dc(!hop.forward) && supplied(hop.to))
+        };
+        let behind = |hop: Hop| resistive(link(&hop)) && self.rails.is_signal(hop.to) && works(hop.to);
+        works(net) || self.connectivity.hops(net).any(behind)
     }
 
-    /// Something that drives, or may drive, is on the net.
+    /// Something that drives, or may drive, is on the net, or behind resistors, diodes and contacts.
     fn driven(&self, net: Id<Net>) -> bool {
-        let kinds = |kind| {
+        let passes = |kind: LinkKind| {
+            kind.is_low_resistance()
+                || matches!(kind, LinkKind::Resistor(_) | LinkKind::Diode | LinkKind::Schottky | LinkKind::Led)
+        };
+        let drives = |kind| {
             matches!(kind, LinkKind::Source(_) | LinkKind::CurrentSource | LinkKind::Transistor | LinkKind::Switch)
         };
-        self.circuit.nets[net].port
-            || self.connectivity.pins(net).iter().any(|pin| self.natures.kind(pin.element).is_foreign())
-            || self.connectivity.hops(net).any(|hop| kinds(self.connectivity.link(hop.link).kind))
+        self.reach(net, passes).nets.iter().filter(|&&net| self.rails.is_signal(net)).any(|&net| {
+            self.circuit.nets[net].port
+                || self.connectivity.pins(net).iter().any(|pin| self.natures.kind(pin.element).is_foreign())
+                || self.connectivity.hops(net).any(|hop| drives(self.connectivity.link(hop.link).kind))
+        })
+    }
+
+    /// The nets that `net` reaches over links of the wanted kinds, no further than rails and returns.
+    fn reach(&self, net: Id<Net>, wanted: impl Fn(LinkKind) -> bool) -> Reach {
+        self.connectivity.reach(
+            net,
+            |link, _| wanted(link.kind),
+            |net| if self.rails.is_signal(net) { At::On } else { At::End },
+        )
     }
 }
 
