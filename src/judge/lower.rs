@@ -3,6 +3,7 @@
 //! Only a closed subset of CEL is taken: `&& || !`, comparison, arithmetic, literals, `in` a literal list, `exists`, `all`.
 //! Parsing takes the crate's fast parser; it drops offsets, so a refused predicate is parsed again for its caret.
 
+use std::cell::Cell;
 use std::ops::Range;
 
 use cel::common::ast::{CallExpr, ComprehensionExpr, Expr, IdedExpr, LiteralValue, operators};
@@ -13,6 +14,12 @@ use crate::notes::near::near;
 use super::fact::{Kind, Scope};
 use super::predicate::{Arithmetic, Number, Order, Test, Words};
 use super::vocabulary::{Slot, Vocabulary};
+
+/// Bytes of the longest predicate that is read. House cards may come from anywhere; those that people write are a tenth of it.
+const LONGEST: usize = 4096;
+
+/// How deep a predicate may nest, chains of `&&` included.
+const DEEPEST: usize = 100;
 
 /// Why a predicate is refused.
 #[derive(Clone, Debug, PartialEq, Eq)]
@@ -56,12 +63,16 @@ enum Typed {
 /// # Errors
 /// What is not CEL, not of the subset, or names what does not exist.
 pub(crate) fn lower(text: &str, terms: &Terms<'_>) -> Result<Test, Refused> {
+    if text.len() > LONGEST {
+        let message = format!("a predicate takes at most {LONGEST} bytes");
+        return Err(Refused { message, hint: None, place: None });
+    }
     let tree = PrattParser::new().parse(text).map_err(|_| syntax(text))?;
-    let lowered = Lowering { terms, item: None }.test(&tree);
+    let lowered = Lowering::of(terms).test(&tree);
     lowered.map_err(|fault| {
         // The same tree with offsets: both parsers number nodes in their own way, so the check runs again on this one.
         let Ok((tree, info)) = Parser::default().parse_with_source_info(text) else { return placed(fault, None) };
-        let fault = Lowering { terms, item: None }.test(&tree).err().unwrap_or(fault);
+        let fault = Lowering::of(terms).test(&tree).err().unwrap_or(fault);
         let place = info.offset_for(fault.node).map(|(start, stop)| bytes(text, start, stop));
         placed(fault, place)
     })
@@ -98,9 +109,14 @@ struct Lowering<'a> {
     terms: &'a Terms<'a>,
     /// The variable of the `exists` or `all` around.
     item: Option<&'a str>,
+    depth: Cell<usize>,
 }
 
-impl Lowering<'_> {
+impl<'a> Lowering<'a> {
+    fn of(terms: &'a Terms<'a>) -> Self {
+        Self { terms, item: None, depth: Cell::new(0) }
+    }
+
     fn test(&self, node: &IdedExpr) -> Result<Test, Fault> {
         match self.typed(node)? {
             Typed::Test(test) => Ok(test),
@@ -116,6 +132,17 @@ impl Lowering<'_> {
     }
 
     fn typed(&self, node: &IdedExpr) -> Result<Typed, Fault> {
+        let depth = self.depth.get();
+        if depth >= DEEPEST {
+            return Err(fault(node, format!("the predicate nests deeper than {DEEPEST}"), None));
+        }
+        self.depth.set(depth + 1);
+        let typed = self.typed_here(node);
+        self.depth.set(depth);
+        typed
+    }
+
+    fn typed_here(&self, node: &IdedExpr) -> Result<Typed, Fault> {
         match &node.expr {
             Expr::Literal(literal) => literal_of(node, literal),
             Expr::Ident(name) if Some(name.as_str()) == self.item => Ok(Typed::Words(Words::Item)),
@@ -188,6 +215,8 @@ impl Lowering<'_> {
             (operators::EQUALS, 2) => Ok(Typed::Test(self.equal(node, call)?)),
             (operators::NOT_EQUALS, 2) => Ok(Typed::Test(Test::Not(Box::new(self.equal(node, call)?)))),
             (operators::IN, 2) => self.among(node, call),
+            (operators::CONDITIONAL, _) => Err(unsupported(node, "`? :`")),
+            (operators::INDEX, _) => Err(unsupported(node, "`[ ]`")),
             (name, _) => Err(unsupported(node, &format!("`{}`", name.trim_matches(['_', '@'])))),
         }
     }
@@ -201,24 +230,38 @@ impl Lowering<'_> {
         }
     }
 
+    /// `in`: a text among texts, or a number equal to one of some numbers.
     fn among(&self, node: &IdedExpr, call: &CallExpr) -> Result<Typed, Fault> {
-        let Typed::Words(words) = self.typed(&call.args[0])? else {
-            return Err(fault(&call.args[0], "`in` takes a text on its left", None));
-        };
         let Expr::List(list) = &call.args[1].expr else {
             return Err(fault(&call.args[1], "`in` takes a list of literals on its right", None));
         };
-        let mut entries = Vec::new();
-        for element in &list.elements {
-            match self.typed(element)? {
-                Typed::Words(Words::Literal(text)) => entries.push(text),
-                _ => return Err(fault(element, "the list holds texts only", None)),
-            }
-        }
-        if entries.is_empty() {
+        if list.elements.is_empty() {
             return Err(fault(node, "nothing is in an empty list", None));
         }
-        Ok(Typed::Test(Test::Among(words, entries)))
+        match self.typed(&call.args[0])? {
+            Typed::Words(words) => {
+                let mut entries = Vec::new();
+                for element in &list.elements {
+                    let Typed::Words(Words::Literal(text)) = self.typed(element)? else {
+                        return Err(fault(element, "the list holds literal texts only", None));
+                    };
+                    entries.push(text);
+                }
+                Ok(Typed::Test(Test::Among(words, entries)))
+            }
+            Typed::Number(number) => {
+                let mut any = Test::Is(false);
+                for element in &list.elements {
+                    let Typed::Number(Number::Literal(value)) = self.typed(element)? else {
+                        return Err(fault(element, "the list holds literal numbers only", None));
+                    };
+                    let equal = Test::Compare(Order::Equal, number.clone(), Number::Literal(value));
+                    any = if any == Test::Is(false) { equal } else { Test::Or(Box::new(any), Box::new(equal)) };
+                }
+                Ok(Typed::Test(any))
+            }
+            _ => Err(fault(&call.args[0], "`in` takes a text or a number on its left", None)),
+        }
     }
 
     /// `exists` and `all` arrive as loops that start from false and from true.
@@ -236,7 +279,7 @@ impl Lowering<'_> {
             return Err(wrong());
         };
         let [_, condition] = &step.args[..] else { return Err(wrong()) };
-        let inner = Lowering { terms: self.terms, item: Some(&loop_.iter_var) };
+        let inner = Lowering { terms: self.terms, item: Some(&loop_.iter_var), depth: self.depth.clone() };
         match (*start.inner(), step.func_name.as_str()) {
             (false, operators::LOGICAL_OR) => Ok(Typed::Test(Test::Exists(list, Box::new(inner.test(condition)?)))),
             (true, operators::LOGICAL_AND) => Ok(Typed::Test(Test::All(list, Box::new(inner.test(condition)?)))),
