@@ -54,18 +54,6 @@ impl Names {
     pub(crate) fn text(&self, name: Name) -> &str {
         spelled(&self.text, &self.ends, name.0)
     }
-
-    /// How many names there are.
-    #[must_use]
-    pub(crate) fn len(&self) -> usize {
-        self.ends.len()
-    }
-
-    /// Whether there is none.
-    #[must_use]
-    pub(crate) fn is_empty(&self) -> bool {
-        self.ends.is_empty()
-    }
 }
 
 fn spelled<'a>(text: &'a str, ends: &[u32], row: u32) -> &'a str {
@@ -101,6 +89,5 @@ mod tests {
         assert_eq!(names.text(upper), "+12V");
         assert_eq!(names.get("+12v"), Some(upper));
         assert_eq!(names.get("gone"), None);
-        assert_eq!(names.len(), 2);
     }
 }

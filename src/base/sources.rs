@@ -59,12 +59,6 @@ impl Sources {
         self.text(span.file).get(span.start as usize..span.end()).unwrap_or("")
     }
 
-    /// Total bytes of decoded text, for the input limit.
-    #[must_use]
-    pub(crate) fn bytes(&self) -> usize {
-        self.files.iter().map(|source| source.text.len()).sum()
-    }
-
     /// Where `span` stands, as a person counts.
     #[must_use]
     pub(crate) fn place(&self, span: Span) -> Place {

@@ -28,14 +28,4 @@ impl Span {
     pub(crate) fn end(self) -> usize {
         self.start as usize + self.len as usize
     }
-
-    /// The shortest stretch that covers both; `self` where the files differ.
-    #[must_use]
-    pub(crate) fn to(self, other: Self) -> Self {
-        if self.file != other.file {
-            return self;
-        }
-        let start = self.start.min(other.start) as usize;
-        Self::new(self.file, start, self.end().max(other.end()))
-    }
 }

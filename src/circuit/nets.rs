@@ -13,6 +13,9 @@ use crate::base::table::Id;
 /// Row 0 of the nets: node `0`.
 pub(super) const GROUND: usize = 0;
 
+/// What optional ground ports of digital parts default to (common practice of published digital libraries).
+const DIGITAL_GROUND: &str = "$G_DGND";
+
 /// How the circuit gets its names.
 pub(super) enum Naming {
     /// It takes over all names of the program: one copy, no look-ups.
@@ -53,6 +56,11 @@ impl Expander<'_> {
     pub(super) fn global(&mut self, name: Name, span: Span) -> Id<Net> {
         if let Some(&net) = self.globals.get(&name) {
             return net;
+        }
+        // The digital ground of old simulators' libraries is node 0: they join the two unasked.
+        if self.program.names.text(name).eq_ignore_ascii_case(DIGITAL_GROUND) {
+            self.globals.insert(name, Id::new(GROUND));
+            return Id::new(GROUND);
         }
         let own = self.names.name(self.program, name);
         let row = Net { global: true, ..net(own, Id::new(0), span) };

@@ -12,7 +12,7 @@ use crate::base::notice::Notice;
 use crate::base::sources::Sources;
 use crate::base::span::{FileId, Span};
 use crate::base::table::{Id, Table};
-use crate::netlist::model::{Deck, Statement, Word};
+use crate::netlist::model::{Deck, PartClass, Statement, Word};
 
 /// All files of a board, sorted into scopes.
 #[derive(Debug, Default)]
@@ -121,6 +121,12 @@ impl Program {
     pub(crate) fn part_types_in(&self, definition: &Definition) -> impl Iterator<Item = Name> {
         let template = Id::new(definition.scope.index());
         self.templates[template].parts.iter().filter_map(|part| part.part_type)
+    }
+
+    /// The classes of the parts in the body of `definition`, each with whether the part has a body of its own.
+    pub(crate) fn classes_in(&self, definition: &Definition) -> impl Iterator<Item = (PartClass, bool)> {
+        let template = Id::new(definition.scope.index());
+        self.templates[template].parts.iter().map(|part| (part.class, part.definition.is_some()))
     }
 
     /// The statement at `line` with its words.

@@ -62,18 +62,20 @@ fn spread(connectivity: &Connectivity, reference: Id<Net>, known: &mut [Option<P
         for hop in connectivity.hops(net) {
             let link = connectivity.link(hop.link);
             let there = match link.kind {
+                // Of returns that a net tie joins each is the negative terminal of its own sources.
+                LinkKind::Wire if here.source.is_none() => Potential { reference: hop.to, ..here },
                 LinkKind::Wire => here,
                 // Walking from minus to plus adds the source's voltage.
                 LinkKind::Source(Some((low, high))) if !hop.forward => Potential {
                     low: Volts(here.low.0 + low.0),
                     high: Volts(here.high.0 + high.0),
-                    reference,
+                    reference: here.reference,
                     source: Some(link.element),
                 },
                 LinkKind::Source(Some((low, high))) => Potential {
                     low: Volts(here.low.0 - high.0),
                     high: Volts(here.high.0 - low.0),
-                    reference,
+                    reference: here.reference,
                     source: Some(link.element),
                 },
                 _ => continue,

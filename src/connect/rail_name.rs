@@ -75,6 +75,11 @@ pub(crate) fn read(name: &str) -> NameSays {
     rail(plain)
 }
 
+/// Whether the name is a single letter, as `M` for the return of a 24 V supply is: a weak sign by itself.
+pub(crate) fn is_letter(name: &str) -> bool {
+    matches!(name.as_bytes(), [letter] if letter.is_ascii_alphabetic())
+}
+
 fn return_kind(name: &str) -> Option<ReturnKind> {
     let one = |word: &str| {
         if POWER_RETURNS.contains(&word) {

@@ -28,6 +28,8 @@ pub(crate) struct Rail {
     pub net: Id<Net>,
     /// Its voltage above its return, where known.
     pub level: Option<Level>,
+    /// What a source of the netlist gives, where the notes say something too.
+    pub source: Option<Level>,
     /// What its name says, where that is a voltage.
     pub name_volts: Option<Volts>,
     /// The return it is measured from, where a source or the notes tell.
@@ -99,7 +101,11 @@ impl Rails {
         let mut found = Self { roles: vec![Role::Signal; circuit.nets.len()], rails: Table::new() };
         for (id, net) in circuit.nets.iter() {
             let note = notes.binary_search_by_key(&id, |(net, _)| *net).ok().map(|at| &notes[at].1);
-            let says = rail_name::read(circuit.names.text(net.name));
+            let text = circuit.names.text(net.name);
+            let mut says = rail_name::read(text);
+            if rail_name::is_letter(text) && (net.sheet.index() > 0 || connectivity.pins(id).len() < RETURN_PINS) {
+                says = NameSays::Signal;
+            }
             let role = found.role_of(id, says, potentials[id.index()], note, &floating_returns);
             found.roles[id.index()] = role;
         }
@@ -160,8 +166,13 @@ impl Rails {
                 origin: Origin::Source(source),
                 tolerance_stated: false,
             });
-        // A source that moves is a signal's driver, not a supply; 1 mV tells it from rounding.
-        let steady = from_source.filter(|level| level.high.0 - level.low.0 < 1e-3);
+        // A source that moves is a signal's driver, not a supply, unless the net's name says that it settles there;
+        // 1 mV tells it from rounding.
+        let steady = from_source.and_then(|level| match name_volts {
+            _ if level.high.0 - level.low.0 < 1e-3 => Some(level),
+            Some(name) => settled(level, name),
+            None => None,
+        });
         let moving = from_source.is_some() && steady.is_none();
         let by_name = name_volts.map(|volts| Level {
             low: volts,
@@ -178,15 +189,25 @@ impl Rails {
             if level.nominal.0 == 0.0 {
                 return Role::Return(return_kind(says));
             }
-            return Role::Rail(self.rails.push(Rail { net, level: Some(level), name_volts, reference }));
+            return Role::Rail(self.rails.push(Rail {
+                net,
+                level: Some(level),
+                source: steady,
+                name_volts,
+                reference,
+            }));
         }
         match says {
             NameSays::Return(kind) => Role::Return(kind),
-            NameSays::Rail(_) => Role::Rail(self.rails.push(Rail { net, level: by_name, name_volts, reference })),
+            NameSays::Rail(_) => {
+                Role::Rail(self.rails.push(Rail { net, level: by_name, source: None, name_volts, reference }))
+            }
             _ if floating_returns.contains(&net) => Role::Return(ReturnKind::Power),
-            NameSays::UnknownRail => Role::Rail(self.rails.push(Rail { net, level: None, name_volts, reference })),
+            NameSays::UnknownRail => {
+                Role::Rail(self.rails.push(Rail { net, level: None, source: None, name_volts, reference }))
+            }
             NameSays::Signal if note.is_some_and(|note| note.role == Some(NotedRole::Rail)) => {
-                Role::Rail(self.rails.push(Rail { net, level: None, name_volts, reference }))
+                Role::Rail(self.rails.push(Rail { net, level: None, source: None, name_volts, reference }))
             }
             NameSays::Signal => Role::Signal,
         }
@@ -210,6 +231,23 @@ impl Rails {
         }
     }
 }
+
+/// A supply that ramps up or ripples: the ends of its range that are near the voltage that the net's name says.
+fn settled(level: Level, name: Volts) -> Option<Level> {
+    let near = |volts: Volts| (volts.0 - name.0).abs() <= NEAR_NAME * name.0.abs();
+    match (near(level.low), near(level.high)) {
+        (true, true) => Some(level),
+        (false, true) => Some(Level { low: level.high, nominal: level.high, ..level }),
+        (true, false) => Some(Level { high: level.low, nominal: level.low, ..level }),
+        (false, false) => None,
+    }
+}
+
+/// A net whose name is a single letter is a return only from this many pins on: `M` is also the middle of something.
+const RETURN_PINS: usize = 4;
+
+/// A moving source and a rail's name agree within this share: a ramp overshoots less, a driver's swing is another voltage.
+const NEAR_NAME: f64 = 0.2;
 
 fn return_kind(says: NameSays) -> ReturnKind {
     if let NameSays::Return(kind) = says { kind } else { ReturnKind::Power }

@@ -70,7 +70,8 @@ impl Built {
     /// The elements that are bridges of everything that can be reached from `root`.
     fn bridges(&self, root: &str) -> Vec<String> {
         let found = self.connectivity.segments(self.net(root), |_, _| true);
-        let element = |bridge: &super::segments::Bridge| self.circuit.refdes(self.connectivity.link(bridge.link).element);
+        let element =
+            |bridge: &super::segments::Bridge| self.circuit.refdes(self.connectivity.link(bridge.link).element);
         let mut names: Vec<String> = found.bridges.iter().map(element).collect();
         names.sort();
         names
@@ -124,7 +125,11 @@ fn a_search_through_a_dense_mesh_stops_and_says_so() {
         }
     }
     let board = built(&lines);
-    let found = board.connectivity.paths(board.net("M0"), |_, _| true, |net| if net == board.net("M1") { At::End } else { At::On });
+    let found = board.connectivity.paths(
+        board.net("M0"),
+        |_, _| true,
+        |net| if net == board.net("M1") { At::End } else { At::On },
+    );
     assert!(found.cut);
 }
 
@@ -180,8 +185,12 @@ fn copper_without_a_name_takes_the_role_of_what_it_is_joined_to() {
 #[test]
 fn pins_stand_in_the_order_of_the_netlist_and_unfitted_parts_have_none() {
     let board = built("R1 A B 1k\nR2 A C DNP\nR3 C A 1k");
-    let pins: Vec<(String, u16)> =
-        board.connectivity.pins(board.net("A")).iter().map(|pin| (board.circuit.refdes(pin.element), pin.index)).collect();
+    let pins: Vec<(String, u16)> = board
+        .connectivity
+        .pins(board.net("A"))
+        .iter()
+        .map(|pin| (board.circuit.refdes(pin.element), pin.index))
+        .collect();
     assert_eq!(pins, [("R1".to_owned(), 0), ("R3".to_owned(), 1)]);
 }
 

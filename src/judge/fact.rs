@@ -119,7 +119,7 @@ pub(crate) struct Fact {
 }
 
 /// The value of a fact.
-#[derive(Clone, Debug)]
+#[derive(Clone, Debug, Default)]
 pub(crate) enum FactValue {
     /// True or false.
     Flag(bool),
@@ -130,6 +130,7 @@ pub(crate) enum FactValue {
     /// A list of words.
     Texts(Vec<Box<str>>),
     /// Not known; [`Because::gaps`] says what is missing.
+    #[default]
     Gap,
 }
 
@@ -192,12 +193,6 @@ pub(crate) struct Question {
     pub asks: &'static str,
     /// How a notes file answers it: `[[loads]] at = "J3.1", kind = …`.
     pub answer: String,
-}
-
-impl Default for FactValue {
-    fn default() -> Self {
-        Self::Gap
-    }
 }
 
 impl Interval {
@@ -268,7 +263,7 @@ impl Fact {
     }
 
     /// The same marked as from memory.
-    pub(crate) fn from_memory(mut self) -> Self {
+    pub(crate) fn remembered(mut self) -> Self {
         self.because.get_or_insert_default().from_memory = true;
         self
     }

@@ -74,6 +74,7 @@ const CLASSES: &[(&str, PartClass)] = &[
     ("XF", PartClass::Fuse),
     ("XTAL", PartClass::Crystal),
     ("Y", PartClass::Crystal),
+    ("YV", PartClass::Solenoid),
     ("ZD", PartClass::Diode),
 ];
 

@@ -42,6 +42,8 @@ pub(crate) struct Board<'a> {
     outputs: FxHashMap<Id<Net>, SmallVec<[(u32, u32); 1]>>,
     inputs: FxHashMap<Id<Net>, SmallVec<[(u32, u32); 1]>>,
     coupled: Vec<Id<Element>>,
+    /// Nets at parts that are not fitted, sorted.
+    empty_places: Vec<Id<Net>>,
     several_returns: bool,
     negatives: RwLock<FxHashMap<Id<Net>, Negative>>,
 }
@@ -89,6 +91,10 @@ impl<'a> Board<'a> {
         let mut returns: Vec<Id<Net>> =
             circuit.nets.ids().filter(|&net| rails.is_return(net) && !connectivity.pins(net).is_empty()).collect();
         returns.dedup_by(|a, b| connectivity.same(*a, *b));
+        let left_out = |id: Id<Element>| !circuit.elements[id].fitted || noted.is_left_out(id);
+        let mut empty_places: Vec<Id<Net>> =
+            circuit.elements.ids().filter(|&id| left_out(id)).flat_map(|id| circuit.pins(id).iter().copied()).collect();
+        empty_places.sort_unstable();
         let several_returns = returns.iter().any(|&net| !connectivity.same(net, returns[0]));
         Self {
             circuit,
@@ -101,6 +107,7 @@ impl<'a> Board<'a> {
             outputs,
             inputs,
             coupled,
+            empty_places,
             several_returns,
             negatives: RwLock::default(),
         }
@@ -176,6 +183,11 @@ impl<'a> Board<'a> {
         self.coupled.binary_search(&element).is_ok()
     }
 
+    /// Whether a part that is not fitted has a pin on the net.
+    pub(crate) fn is_at_empty_place(&self, net: Id<Net>) -> bool {
+        self.empty_places.binary_search(&net).is_ok()
+    }
+
     /// Resistance of a winding, filament or other load, from its own line or the notes.
     pub(crate) fn winding_ohms(&self, element: Id<Element>) -> Option<Ohms> {
         self.noted
@@ -220,13 +232,19 @@ impl<'a> Board<'a> {
         }
     }
 
+    /// A pin in a sentence: `pin 8`, with the port's name where the netlist gives one: `pin E`.
+    pub(crate) fn pin_words(&self, pin: Pin) -> String {
+        format!("pin {}", self.pin_label(pin))
+    }
+
     /// Whether a person gave the net its name, not an exporter.
     pub(crate) fn has_given_name(&self, net: Id<Net>) -> bool {
         is_given(self.circuit.names.text(self.circuit.nets[net].name))
     }
 
-    /// Parts whose type is nearly that of a sink array and that no profile, family or look-alike knows.
-    pub(crate) fn near_arrays(&self) -> Vec<(Id<Element>, &'a Profile)> {
+    /// Parts that look like sink arrays and that no profile, family or look-alike knows: by a type that is nearly an
+    /// array's, or by a definition that is built like one, named in `built_like`.
+    pub(crate) fn near_arrays(&self, built_like: &[String]) -> Vec<(Id<Element>, &'a Profile)> {
         let mut known: FxHashMap<Name, Option<&'a Profile>> = FxHashMap::default();
         let mut near = Vec::new();
         for (id, element) in self.circuit.elements.iter() {
@@ -236,7 +254,13 @@ impl<'a> Board<'a> {
             if !matches!(self.natures.of(id), Nature::Block) {
                 continue;
             }
-            let found = known.entry(part_type).or_insert_with(|| self.library.near(self.circuit.names.text(part_type)));
+            let found = known.entry(part_type).or_insert_with(|| {
+                let text = self.circuit.names.text(part_type);
+                let like = || built_like.iter().any(|name| name.eq_ignore_ascii_case(text));
+                // The usual arrays of seven and of eight: the nearest to what is known of the body.
+                let usual = if element.pin_count > SEVEN_CHANNEL_PINS { "x2803" } else { "x2003" };
+                self.library.near(text).or_else(|| like().then(|| self.library.profile(usual)).flatten())
+            });
             near.extend(found.map(|profile| (id, profile)));
         }
         near
@@ -269,6 +293,9 @@ impl<'a> Board<'a> {
         self.circuit.pins(pin.element)[usize::from(pin.index)]
     }
 }
+
+/// Pins of an array of seven: inputs, outputs, emitter and clamp pin.
+const SEVEN_CHANNEL_PINS: u16 = 16;
 
 /// Pins of one net that are looked at; supply nets have more, and nobody walks there.
 const MAX_PINS_AT_NET: usize = 200;

@@ -55,6 +55,11 @@ impl Branches {
     /// Follows everything that hangs on `output`.
     pub(crate) fn of(board: &Board<'_>, output: Id<Net>) -> Self {
         let connectivity = board.connectivity;
+        // On a rail or a return there is nothing to follow: what else is there is not this output's.
+        if let Some(end) = tie(board, output) {
+            let path = Path { hops: SmallVec::new(), end: output, dead_end: false };
+            return Self { list: vec![Branch { path, end }], cut: false };
+        }
         let at = |net: Id<Net>| {
             if connectivity.same(net, output) {
                 // Joined copper is still the output: its other channels are a parallel group, not an end.
@@ -63,9 +68,7 @@ impl Branches {
             match board.rails.role(net) {
                 Role::Rail(_) | Role::Return(_) => At::End,
                 Role::Signal if board.channel_at_output(net).is_some() => At::End,
-                Role::Signal if board.foreign_pins(net).next().is_some() || board.circuit.nets[net].port => {
-                    At::EndAndOn
-                }
+                Role::Signal if board.foreign_pins(net).next().is_some() || leaves(board, net) => At::EndAndOn,
                 Role::Signal => At::On,
             }
         };
@@ -86,16 +89,15 @@ impl Branches {
 }
 
 /// The ends of a path: one, but for a net where several foreign pins meet.
-fn ends<'b>(board: &'b Board<'_>, output: Id<Net>, path: &Path) -> SmallVec<[End; 2]> {
+fn ends(board: &Board<'_>, output: Id<Net>, path: &Path) -> SmallVec<[End; 2]> {
     let net = path.end;
     if path.dead_end {
         return SmallVec::from_slice(&[End::Nowhere(net)]);
     }
     let mut ends = SmallVec::new();
-    match board.rails.role(net) {
-        Role::Rail(_) => ends.push(End::Rail(net)),
-        Role::Return(_) => ends.push(End::Return(net)),
-        Role::Signal => match board.channel_at_output(net) {
+    match tie(board, net) {
+        Some(end) => ends.push(end),
+        None => match board.channel_at_output(net) {
             Some((array, channel)) if !board.connectivity.same(net, output) => ends.push(End::Output(array, channel)),
             _ => ends.extend(ends_at(board, net)),
         },
@@ -106,8 +108,22 @@ fn ends<'b>(board: &'b Board<'_>, output: Id<Net>, path: &Path) -> SmallVec<[End
     ends
 }
 
+/// A port of the board, or a net that other sheets know by its name.
+fn leaves(board: &Board<'_>, net: Id<Net>) -> bool {
+    board.circuit.nets[net].port || board.circuit.nets[net].global
+}
+
+/// The end that a rail or a return is.
+fn tie(board: &Board<'_>, net: Id<Net>) -> Option<End> {
+    match board.rails.role(net) {
+        Role::Rail(_) => Some(End::Rail(net)),
+        Role::Return(_) => Some(End::Return(net)),
+        Role::Signal => None,
+    }
+}
+
 fn ends_at<'b>(board: &'b Board<'_>, net: Id<Net>) -> impl Iterator<Item = End> + 'b {
-    let port = board.circuit.nets[net].port.then_some(End::Port(net));
+    let port = leaves(board, net).then_some(End::Port(net));
     let pins = board
         .foreign_pins(net)
         .map(|pin| if board.is_connector(pin.element) { End::Connector(pin) } else { End::Part(pin) });
@@ -137,6 +153,12 @@ impl Branch {
             }
         }
         led
+    }
+
+    /// Whether a zener in series with a load is all that stands against the current: it drops its voltage and conducts.
+    pub(crate) fn drops_by_zener(&self, board: &Board<'_>) -> bool {
+        let passes = |kind: LinkKind, forward: bool| kind.passes_dc(!forward) || matches!(kind, LinkKind::Zener(_));
+        self.any(board, LinkKind::is_load) && self.links(board).all(|(link, forward)| passes(link.kind, forward))
     }
 
     /// The links from the output on, each with whether it is walked from its `from` to its `to`.

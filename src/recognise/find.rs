@@ -88,7 +88,8 @@ pub(crate) fn instances<'n>(
 fn array_of<'p>(ground: &Ground<'_, 'p>, instance: Instance<'p>) -> Array<'p> {
     let circuit = ground.circuit;
     let Instance { element, profile, roles } = instance;
-    let sanity = if roles.from == PinsFrom::Notes { Sanity::Passes } else { ground.test(&roles.pins) };
+    let by_number = roles.from == PinsFrom::PinNumbers;
+    let sanity = if roles.from == PinsFrom::Notes { Sanity::Passes } else { ground.test(&roles.pins, by_number) };
     // `U1C` alone is still the third gate of its package.
     let gate = if roles.cell { gate_of(circuit.names.text(circuit.elements[element].refdes)).unwrap_or(0) } else { 0 };
     let channels = channels_of(profile, &roles.pins, gate, 0);

@@ -30,6 +30,9 @@ pub(crate) fn links(
     maker.links
 }
 
+/// Types of diodes that are LEDs by their colour (common practice).
+const COLOURS: [&str; 8] = ["RED", "GREEN", "BLUE", "YELLOW", "WHITE", "AMBER", "ORANGE", "INFRARED"];
+
 struct Maker<'a> {
     circuit: &'a Circuit,
     natures: &'a Natures<'a>,
@@ -57,13 +60,18 @@ impl Maker<'_> {
 
     fn known(&mut self, id: Id<Element>, element: &Element, kind: &Kind<'_>) {
         let pins = usize::from(element.pin_count);
-        if matches!(kind.family_kind(), Some(FamilyKind::Relay)) && pins > 2
-            || kind.class == PartClass::Relay && pins > 2
-        {
+        let relay = kind.class == PartClass::Relay || kind.family_kind() == Some(FamilyKind::Relay);
+        if relay && pins > 2 {
             return self.relay(id, kind);
         }
         match kind.class {
+            // Y is a crystal in one country and a valve in another: the type decides.
+            PartClass::Crystal if matches!(kind.family_kind(), Some(FamilyKind::Solenoid | FamilyKind::Valve)) => {
+                self.add(id, 0, 1, LinkKind::Solenoid);
+            }
             PartClass::Resistor => self.add(id, 0, 1, self.resistor(id, element)),
+            // Y is a valve as well as a crystal: a type that is known decides.
+            PartClass::Crystal if kind.by_type => self.by_family(id, element, kind),
             PartClass::Capacitor | PartClass::Crystal => self.add(id, 0, 1, LinkKind::Capacitor),
             PartClass::Inductor => self.add(id, 0, 1, LinkKind::Inductor),
             PartClass::Diode | PartClass::Led => self.diode(id, element, kind),
@@ -84,7 +92,9 @@ impl Maker<'_> {
                 self.add(id, 1, 2, contact);
             }
             PartClass::Switch => self.add(id, 0, 1, LinkKind::Switch),
-            PartClass::Jumper => self.add(id, 0, 1, LinkKind::Jumper),
+            PartClass::Jumper => {
+                self.add(id, 0, 1, if self.is_closed(id, element) { LinkKind::Wire } else { LinkKind::Jumper })
+            }
             PartClass::NetTie => (1..pins).for_each(|pin| self.add(id, 0, pin, LinkKind::Wire)),
             PartClass::Fuse => self.add(id, 0, 1, LinkKind::Fuse),
             PartClass::Ferrite => self.add(id, 0, 1, LinkKind::Ferrite),
@@ -114,6 +124,18 @@ impl Maker<'_> {
         }
     }
 
+    /// A jumper that the notes give no resistance, or whose type says that it is closed as made.
+    fn is_closed(&self, id: Id<Element>, element: &Element) -> bool {
+        let words =
+            element.part_type.map(|name| self.circuit.names.text(name).to_ascii_uppercase()).unwrap_or_default();
+        let bridged = || {
+            words
+                .split(|c: char| !c.is_ascii_alphabetic())
+                .any(|word| matches!(word, "BRIDGED" | "CLOSED" | "NC" | "WIRE"))
+        };
+        self.noted.element_ohms(id).map_or_else(bridged, |ohms| ohms.0 <= WIRE_OHMS)
+    }
+
     fn diode(&mut self, id: Id<Element>, element: &Element, kind: &Kind<'_>) {
         let link = match kind.family_kind() {
             _ if kind.class == PartClass::Led => LinkKind::Led,
@@ -134,6 +156,7 @@ impl Maker<'_> {
         let model = element.model.map(|model| text(self.circuit.models[model].name));
         let word = model.or(element.part_type.map(text)).unwrap_or_default();
         word.split(|c: char| !c.is_ascii_alphabetic()).any(|part| part == "LED")
+            || COLOURS.contains(&word.as_str())
             || text(element.refdes).starts_with("LED")
     }
 
@@ -197,10 +220,10 @@ impl Maker<'_> {
                 rails.entry(net).or_insert(index);
             }
         }
-        if let (&[output], 1) = (&driven[..], rails.len()) {
-            if let Some(&rail) = rails.values().next() {
-                self.add(id, rail, output, self.coil(kind));
-            }
+        if let (&[output], 1) = (&driven[..], rails.len())
+            && let Some(&rail) = rails.values().next()
+        {
+            self.add(id, rail, output, self.coil(kind));
         }
     }
 

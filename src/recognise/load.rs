@@ -10,6 +10,8 @@ use crate::connect::link::{Link, LinkKind};
 
 use super::board::Board;
 use super::branch::{Branch, Branches, End};
+use super::sourced::{controls, leads_to_unfitted, sourced_rail};
+use super::stub::stubs;
 
 /// A load of one channel.
 #[derive(Clone, Debug)]
@@ -96,7 +98,7 @@ pub(crate) struct Hanging {
 }
 
 /// From this on a resistor that shares its net with a receiver or an input is a pull-up (common practice; card-neutral).
-const PULL_UP_OHMS: f64 = 1_000.0;
+pub(crate) const PULL_UP_OHMS: f64 = 1_000.0;
 
 impl LoadKind {
     /// The kind's name in a notes file and in every output.
@@ -131,7 +133,7 @@ impl LoadKind {
 impl Hanging {
     /// Sorts what hangs on `output`. `watched`: an input of another array or a known receiver shares its copper.
     pub(crate) fn of(board: &Board<'_>, output: Id<Net>) -> Self {
-        let branches = Branches::of(board, output);
+        let mut branches = Branches::of(board, output);
         let mut hanging = Self::default();
         hanging.collect_pins(board, &branches, output);
         let watched = !hanging.receivers.is_empty() || board.is_input(output);
@@ -144,6 +146,11 @@ impl Hanging {
             } else if is_suppressor(board, branch) {
                 hanging.suppressors.push(row);
             }
+        }
+        for stub in stubs(board, &branches, &loads) {
+            branches.list.push(stub);
+            let row = branches.list.len() - 1;
+            loads.extend(as_load(board, &branches.list[row], row));
         }
         drop_lesser(board, &branches, &mut loads);
         hanging.branches = branches;
@@ -213,11 +220,19 @@ fn kind_of(board: &Board<'_>, branch: &Branch) -> Option<LoadKind> {
 /// The load that one path makes, if it makes one.
 fn as_load(board: &Board<'_>, branch: &Branch, row: usize) -> Option<Load> {
     let kind = kind_of(board, branch)?;
-    let led_reversed = branch.blocked_by_led_only(board);
-    let into = branch.conducts_in(board) || led_reversed;
+    let led_reversed = branch.blocked_by_led_only(board) && !matches!(branch.end, End::Return(_));
+    let into = branch.conducts_in(board) || led_reversed || branch.drops_by_zener(board);
     let supply = match branch.end {
-        End::Rail(net) if into => Supply::Rail(net),
+        // A net that is a rail by its copper bears another name: the rail's own says more.
+        End::Rail(net) if into => Supply::Rail(board.rails.rail(net).map_or(net, |rail| rail.net)),
+        End::Part(pin) if into && sourced_rail(board, pin).is_some() => {
+            sourced_rail(board, pin).map_or(Supply::Unknown, Supply::Rail)
+        }
         End::Connector(_) | End::Part(_) | End::Port(_) | End::Unnamed(_) if into => Supply::Maybe(branch.path.end),
+        // The base or gate of a transistor is no dead end.
+        End::Nowhere(net) if controls(board, net) => Supply::Maybe(net),
+        // A resistor that leads to a test point or to a place without a part is no load.
+        End::Nowhere(net) if kind == LoadKind::Resistor && leads_to_unfitted(board, net) => return None,
         End::Nowhere(net) => Supply::None(net),
         End::Return(net) if branch.conducts_out(board) => {
             // From 1 kohm on a resistor to the return is a pull-down or a divider, no load.
@@ -271,9 +286,12 @@ fn naming(board: &Board<'_>, branch: &Branch) -> SmallVec<[Id<Element>; 4]> {
 fn series_ohms(board: &Board<'_>, branch: &Branch) -> Option<Ohms> {
     let drawn_apart = branch.any(board, |kind| matches!(kind, LinkKind::Resistor(_)) && !kind.is_low_resistance());
     let mut sum = 0.0;
+    // Beside a resistor that is drawn an inductor without one of its own is ideal: the resistor stands for its winding.
+    let drawn = branch.any(board, |kind| matches!(kind, LinkKind::Resistor(Some(_))) && !kind.is_low_resistance());
     for (link, _) in branch.links(board) {
         sum += match link.kind {
             LinkKind::Resistor(ohms) => ohms?.0,
+            LinkKind::Inductor if drawn => board.winding_ohms(link.element).map_or(0.0, |ohms| ohms.0),
             LinkKind::Inductor if drawn_apart => board.winding_ohms(link.element).map_or(0.0, |ohms| ohms.0),
             kind if kind.is_inductive() || matches!(kind, LinkKind::Lamp | LinkKind::Buzzer) => {
                 board.winding_ohms(link.element)?.0

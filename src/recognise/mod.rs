@@ -20,4 +20,8 @@ pub(crate) mod pins;
 pub(crate) mod returns;
 pub(crate) mod sanity;
 pub(crate) mod site;
+pub(crate) mod sourced;
+pub(crate) mod structure;
+pub(crate) mod stub;
+pub(crate) mod switched;
 pub(crate) mod turn_off;

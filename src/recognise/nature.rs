@@ -51,12 +51,15 @@ pub(crate) struct Natures<'p> {
     of: Vec<u32>,
 }
 
+/// What two parts must share to be of one kind: class, type word, model, reading, and whether they have more than two
+/// pins.
+type Same = (PartClass, Option<Name>, Option<Id<Model>>, Reading, bool);
+
 impl<'p> Natures<'p> {
     /// Looks every element up, each kind of part once.
     pub(crate) fn find(circuit: &Circuit, library: &'p Library, profiles: &FxHashMap<Id<Element>, String>) -> Self {
         let mut natures = Self::default();
-        let mut known: FxHashMap<(PartClass, Option<Name>, Option<Id<Model>>, Reading, bool), u32> =
-            FxHashMap::default();
+        let mut known: FxHashMap<Same, u32> = FxHashMap::default();
         for (id, element) in circuit.elements.iter() {
             let class = class_of(circuit, element);
             let many = element.pin_count > 2;
@@ -129,10 +132,10 @@ impl Kind<'_> {
 /// The role of a block's pin by port name, or by the order that the family fixes.
 pub(crate) fn pin_role(circuit: &Circuit, family: &Family, pin: Pin) -> Option<FamilyPin> {
     let ports = circuit.elements[pin.element].block.map(|block| &circuit.block_types[block].ports);
-    if let Some(&port) = ports.and_then(|ports| ports.get(usize::from(pin.index))) {
-        if let Some((role, _)) = family.pin(circuit.names.text(port)) {
-            return Some(role);
-        }
+    if let Some(&port) = ports.and_then(|ports| ports.get(usize::from(pin.index)))
+        && let Some((role, _)) = family.pin(circuit.names.text(port))
+    {
+        return Some(role);
     }
     let count = usize::from(circuit.elements[pin.element].pin_count);
     if family.order.len() == count { family.order.get(usize::from(pin.index)).copied() } else { None }
@@ -159,10 +162,11 @@ fn kind_of<'p>(circuit: &Circuit, library: &'p Library, element: &Element, class
         class,
         PartClass::Block | PartClass::Optocoupler | PartClass::Connector | PartClass::ResistorNetwork | PartClass::Line
     );
-    if could_be_array && element.pin_count > 1 {
-        if let Some(Match::Profile(hit)) = text.map(|text| library.find(text)) {
-            return Kind { nature: Nature::Array(hit), class, family: None, by_type: true, volts: None };
-        }
+    if could_be_array
+        && element.pin_count > 1
+        && let Some(Match::Profile(hit)) = text.map(|text| library.find(text))
+    {
+        return Kind { nature: Nature::Array(hit), class, family: None, by_type: true, volts: None };
     }
     let found = library.family(class, text.or(model));
     let family = found.map(|hit| hit.family);

@@ -25,6 +25,8 @@ pub(crate) struct Noted<'n> {
     pin_loads: FxHashMap<(Id<Element>, u16), NotedLoad<'n>>,
     channel_loads: FxHashMap<(String, u32), NotedLoad<'n>>,
     together: Vec<Vec<(String, u32)>>,
+    /// Groups of channels of which at most one is on at a time.
+    one_at_a_time: Vec<Vec<(String, u32)>>,
     partial: bool,
 }
 
@@ -89,6 +91,9 @@ impl<'n> Noted<'n> {
         for group in notes.together.iter().filter(|group| group.always.as_ref().is_some_and(|said| said.value)) {
             noted.together.push(group.channels.iter().filter_map(|said| channel_of(&said.value)).collect());
         }
+        for group in notes.together.iter().filter(|group| group.at_most.as_ref().is_some_and(|said| said.value <= 1)) {
+            noted.one_at_a_time.push(group.channels.iter().filter_map(|said| channel_of(&said.value)).collect());
+        }
         for net in &notes.nets {
             if let Some(id) = directory.net(&net.name.value) {
                 noted.nets.insert(id, &net.says);
@@ -133,8 +138,8 @@ impl<'n> Noted<'n> {
             note.role = Some(NotedRole::Rail);
             note.reference = rail.says.return_net.as_ref().and_then(|said| directory.net(&said.value));
         }
-        for (&net, says) in &self.nets {
-            if let Some(role) = &says.role {
+        for noted in &notes.nets {
+            if let (Some(net), Some(role)) = (directory.net(&noted.name.value), &noted.says.role) {
                 by_net.entry(net).or_default().role = Some(match role.value {
                     NetRole::Rail => NotedRole::Rail,
                     NetRole::Return => NotedRole::Return,
@@ -191,7 +196,16 @@ impl<'n> Noted<'n> {
 
     /// Whether the notes say that these channels are only ever on or off together.
     pub(crate) fn always_together(&self, channels: &[(&str, u32)]) -> bool {
-        self.together.iter().any(|group| {
+        Self::holds_all(&self.together, channels)
+    }
+
+    /// Whether the notes say that at most one of these channels is on at a time.
+    pub(crate) fn one_at_a_time(&self, channels: &[(&str, u32)]) -> bool {
+        Self::holds_all(&self.one_at_a_time, channels)
+    }
+
+    fn holds_all(groups: &[Vec<(String, u32)>], channels: &[(&str, u32)]) -> bool {
+        groups.iter().any(|group| {
             channels
                 .iter()
                 .all(|(array, channel)| group.iter().any(|(a, c)| a.eq_ignore_ascii_case(array) && c == channel))

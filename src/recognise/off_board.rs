@@ -35,10 +35,10 @@ pub(crate) fn add(board: &Board<'_>, array: &Array<'_>, channel: &Channel, hangi
             hanging.loads.push(told(board, noted, Some(pin), output));
         }
     }
-    if hanging.loads.is_empty() {
-        if let Some(&pin) = hanging.connectors.first() {
-            hanging.loads.push(unknown(board, pin));
-        }
+    if hanging.loads.is_empty()
+        && let Some(&pin) = hanging.connectors.first()
+    {
+        hanging.loads.push(unknown(board, pin));
     }
 }
 

@@ -1,11 +1,16 @@
 //! The return: how the current of an array's loads comes back from the emitter pin to the supply's negative terminal.
 
+use rustc_hash::FxHashSet;
+
 use crate::base::quantity::Ohms;
 use crate::base::table::Id;
 use crate::circuit::model::{Element, Net};
 use crate::connect::graph::Pin;
 use crate::connect::link::{Link, LinkKind};
+use crate::connect::paths::At;
+use crate::connect::rail_name::ReturnKind;
 use crate::connect::rails::Role;
+use crate::connect::segments::Segments;
 
 use super::board::{Board, PinUse};
 use super::driver::{DriverKind, Drivers};
@@ -18,9 +23,22 @@ pub(crate) struct Shared {
     /// Its resistance; none for a ferrite, connector or other part of unknown resistance.
     pub ohms: Option<Ohms>,
     /// The reference that is lifted with it.
-    pub reference: Id<Net>,
+    pub reference: Reference,
     /// Arrays whose emitter current flows through it, by number.
     pub arrays: Vec<usize>,
+}
+
+/// A net that logic or an analogue part measures its levels from.
+#[derive(Clone, Debug)]
+pub(crate) struct Reference {
+    /// The net.
+    pub net: Id<Net>,
+    /// The part.
+    pub by: Id<Element>,
+    /// An analogue or signal ground, not a driver's.
+    pub analogue: bool,
+    /// The negative terminals of the part's own supplies; empty where one of them is not known.
+    pub supplies: Vec<Id<Net>>,
 }
 
 /// Where a rail's current comes back to.
@@ -28,6 +46,8 @@ pub(crate) struct Shared {
 pub(crate) enum Negative {
     /// This net is the supply's negative terminal: a source or the notes say so, or the connector that feeds the rail.
     Net(Id<Net>),
+    /// Most likely this net: every capacitor and part between the rail and a return is on it. Good for holding only.
+    Likely(Id<Net>),
     /// Not known.
     Unknown,
 }
@@ -42,22 +62,85 @@ fn find_negative(board: &Board<'_>, net: Id<Net>) -> Negative {
     if let Some(reference) = board.rails.rail(net).and_then(|rail| rail.reference) {
         return Negative::Net(reference);
     }
-    // A battery, or a connector that carries the rail and exactly one return.
-    let mut found = None;
-    for pin in board.connectivity.pins(net) {
-        if !board.is_connector(pin.element) {
-            continue;
+    let Some(upstream) = upstream(board, net) else { return Negative::Unknown };
+    let mut plugs = Returns::default();
+    for &near in &upstream {
+        if let Some(reference) = board.rails.rail(near).and_then(|rail| rail.reference) {
+            plugs.add(board, reference);
         }
-        for &other in board.circuit.pins(pin.element) {
-            if board.rails.is_return(other) && found.is_none_or(|found| !board.connectivity.same(found, other)) {
-                if found.is_some() {
-                    return Negative::Unknown;
-                }
-                found = Some(other);
+        for pin in board.connectivity.pins(near).iter().filter(|pin| board.is_connector(pin.element)) {
+            board.circuit.pins(pin.element).iter().for_each(|&other| plugs.add(board, other));
+        }
+    }
+    match plugs {
+        Returns::One(net) => return Negative::Net(net),
+        Returns::Several => return Negative::Unknown,
+        Returns::None => {}
+    }
+    let mut parts = Returns::default();
+    for hop in board.connectivity.hops(net) {
+        if board.connectivity.link(hop.link).kind == LinkKind::Capacitor {
+            parts.add(board, hop.to);
+        }
+    }
+    for pin in board.foreign_pins(net) {
+        board.circuit.pins(pin.element).iter().for_each(|&other| parts.add(board, other));
+    }
+    if let Returns::One(net) = parts { Negative::Likely(net) } else { Negative::Unknown }
+}
+
+/// The nets between the rail at `net` and its supply: through fuse, ferrite, switch, and a diode that guards against a
+/// swapped plug. None where a net has more pins than one question may look at.
+fn upstream(board: &Board<'_>, net: Id<Net>) -> Option<Vec<Id<Net>>> {
+    let mut nets = vec![net];
+    let mut at = 0;
+    while let Some(&here) = nets.get(at) {
+        at += 1;
+        if board.connectivity.pins(here).len() > MAX_PINS || nets.len() > MAX_UPSTREAM {
+            return None;
+        }
+        for hop in board.connectivity.hops(here) {
+            let kind = board.connectivity.link(hop.link).kind;
+            let towards = kind.is_low_resistance()
+                || kind == LinkKind::Switch
+                || matches!(kind, LinkKind::Diode | LinkKind::Schottky) && !hop.forward;
+            // A clamp diode's cathode is on the rail as well: its anode is at an output, not at a supply.
+            let supply = !board.rails.is_return(hop.to) && board.channels_at_output(hop.to).is_empty();
+            if towards && supply && !nets.contains(&hop.to) {
+                nets.push(hop.to);
             }
         }
     }
-    found.map_or(Negative::Unknown, Negative::Net)
+    Some(nets)
+}
+
+/// Pins of one rail that are looked at: some hundred arrays' loads. Larger nets are supplies of simulated copper.
+const MAX_PINS: usize = 2_000;
+
+/// Nets between a rail and its supply that one question looks at.
+const MAX_UPSTREAM: usize = 64;
+
+/// Return nets met on a search.
+#[derive(Clone, Copy, Debug, Default)]
+enum Returns {
+    #[default]
+    None,
+    One(Id<Net>),
+    Several,
+}
+
+impl Returns {
+    /// Counts `net` where it is a return; earth is where no supply current goes.
+    fn add(&mut self, board: &Board<'_>, net: Id<Net>) {
+        if !matches!(board.rails.role(net), Role::Return(ReturnKind::Power | ReturnKind::Signal)) {
+            return;
+        }
+        *self = match *self {
+            Self::None => Self::One(net),
+            Self::One(known) if board.connectivity.same(known, net) => Self::One(known),
+            _ => Self::Several,
+        };
+    }
 }
 
 /// What joins two nets of the return network: copper, resistors, chokes, fuses, switches, transistors; not loads' parts
@@ -90,17 +173,61 @@ pub(crate) fn joined(board: &Board<'_>, a: Id<Net>, b: Id<Net>) -> bool {
     board.connectivity.same(a, b) || board.connectivity.joins(a, b, |_, link| is_return_link(board, link))
 }
 
-/// Whether a connector with pins on the return networks of both nets could join them outside the board.
+/// What may lie between an emitter pin and its return and carry the loads' current: copper, a sense resistor, a choke, a
+/// transistor, a contact.
+pub(crate) fn carries_return(kind: LinkKind) -> bool {
+    match kind {
+        LinkKind::Resistor(ohms) => ohms.is_none_or(|ohms| ohms.0 <= SENSE_OHMS),
+        LinkKind::Inductor | LinkKind::Switch | LinkKind::Transistor | LinkKind::Diode | LinkKind::Schottky => true,
+        kind => kind.is_low_resistance(),
+    }
+}
+
+/// Up to this a resistor under an emitter pin is there to sense the current (common practice).
+const SENSE_OHMS: f64 = 100.0;
+
+/// Whether connectors with pins on the return networks of both nets could join them outside the board, or a part of
+/// which nothing is known could do so inside: a module that senses or switches the current.
 pub(crate) fn could_join_outside(board: &Board<'_>, a: Id<Net>, b: Id<Net>) -> bool {
-    let leads_out = |start: Id<Net>| {
-        let reach = board.connectivity.segments(start, |_, link| is_return_link(board, link));
+    let network = |start: Id<Net>| board.connectivity.segments(start, |_, link| is_return_link(board, link));
+    let leads_out = |reach: &Segments| {
         reach.cut
             || reach.nets.iter().any(|&net| {
                 board.circuit.nets[net].port
                     || board.connectivity.pins(net).iter().any(|pin| board.is_connector(pin.element))
             })
     };
-    leads_out(a) && leads_out(b)
+    let (of_a, of_b) = (network(a), network(b));
+    if leads_out(&of_a) && leads_out(&of_b) {
+        return true;
+    }
+    // A net that no name makes a return may be one only behind such a part; two named returns are kept apart on purpose.
+    let inside = |start: Id<Net>, to: &Segments| {
+        let other: FxHashSet<Id<Net>> = to.nets.iter().copied().collect();
+        let on_both = |pin: Pin| board.circuit.pins(pin.element).iter().any(|net| other.contains(net));
+        board.rails.is_signal(start)
+            && board
+                .connectivity
+                .reach(
+                    start,
+                    |link, _| carries_return(link.kind),
+                    |net| if board.rails.is_signal(net) { At::On } else { At::End },
+                )
+                .nets
+                .iter()
+                .flat_map(|&net| board.foreign_pins(net))
+                .any(|pin| board.pin_use(pin) == PinUse::Unknown && on_both(pin))
+    };
+    inside(a, &of_b) || inside(b, &of_a)
+}
+
+/// A part of unknown insides with pins on the copper of both nets: it may join them.
+pub(crate) fn joining_part(board: &Board<'_>, a: Id<Net>, b: Id<Net>) -> Option<Id<Element>> {
+    let copper = board.connectivity.joined(a);
+    let mut parts = copper.into_iter().flat_map(|net| board.foreign_pins(net)).map(|pin| pin.element);
+    parts.find(|&part| {
+        !board.is_connector(part) && board.circuit.pins(part).iter().any(|&net| board.connectivity.same(net, b))
+    })
 }
 
 /// The nets that the drivers of an input take as their reference: return pins of driving parts, minus pins of sources.
@@ -127,12 +254,56 @@ pub(crate) fn return_pins<'b>(board: &'b Board<'_>, pin: Pin) -> impl Iterator<I
     board.circuit.pins(pin.element).iter().copied().filter(move |&net| known && board.rails.is_return(net))
 }
 
-/// The links that the current of `emitter` shares with one of `references` on its way to `negative`.
-pub(crate) fn shared(board: &Board<'_>, emitter: Id<Net>, references: &[Id<Net>], negative: Id<Net>) -> Vec<Shared> {
+/// The references of what drives an input, each with its part.
+pub(crate) fn driver_references(board: &Board<'_>, drivers: &Drivers) -> Vec<Reference> {
+    let mut list: Vec<Reference> = Vec::new();
+    for driver in drivers.active() {
+        match driver.kind {
+            DriverKind::PushPull(pin) | DriverKind::OpenDrain(pin) | DriverKind::MayDrive(pin) => {
+                list.extend(return_pins(board, pin).map(|net| Reference::of_part(board, net, pin.element)));
+            }
+            DriverKind::Source(element) => {
+                let minus = board.circuit.pins(element).get(1).copied();
+                list.extend(minus.map(|net| Reference { net, by: element, analogue: false, supplies: Vec::new() }));
+            }
+            _ => {}
+        }
+    }
+    list
+}
+
+/// The analogue and signal grounds of the board that a part takes as its reference, arrays and connectors aside.
+pub(crate) fn analogue_references(board: &Board<'_>) -> Vec<Reference> {
+    let analogue = |net: &Id<Net>| board.rails.role(*net) == Role::Return(ReturnKind::Signal);
+    let mut list = Vec::new();
+    for net in board.circuit.nets.ids().filter(analogue) {
+        let part = board.foreign_pins(net).find(|pin| !board.is_connector(pin.element));
+        list.extend(part.map(|pin| Reference { analogue: true, ..Reference::of_part(board, net, pin.element) }));
+    }
+    list
+}
+
+impl Reference {
+    /// `net` as the reference of the block `by`.
+    fn of_part(board: &Board<'_>, net: Id<Net>, by: Id<Element>) -> Self {
+        let rails = board.circuit.pins(by).iter().filter(|&&net| board.rails.rail(net).is_some());
+        let known = |&rail: &Id<Net>| match negative(board, rail) {
+            Negative::Net(net) | Negative::Likely(net) => Some(net),
+            Negative::Unknown => None,
+        };
+        let negatives: Option<Vec<Id<Net>>> = rails.map(known).collect();
+        // With one supply in the dark nobody can say that the part moves as a whole.
+        Self { net, by, analogue: false, supplies: negatives.unwrap_or_default() }
+    }
+}
+
+/// The links that the current of `emitter` shares with one of `references` on its way to `negative`. A part that hangs
+/// behind such a link together with its own supplies moves as a whole: it is not lifted.
+pub(crate) fn shared(board: &Board<'_>, emitter: Id<Net>, references: &[Reference], negative: Id<Net>) -> Vec<Shared> {
     let mut shared = Vec::new();
-    // With the emitter on the supply's own copper, or every reference on the emitter's, nothing is shared that lifts.
-    let apart = |net: &Id<Net>| !board.connectivity.same(*net, negative);
-    if !apart(&emitter) || !references.iter().any(apart) {
+    // With the emitter on the supply's own copper, or every reference there, nothing is shared that lifts.
+    let apart = |net: Id<Net>| !board.connectivity.same(net, negative);
+    if !apart(emitter) || !references.iter().any(|reference| apart(reference.net)) {
         return shared;
     }
     let segments = board.connectivity.segments(negative, |_, link| is_return_link(board, link));
@@ -141,8 +312,16 @@ pub(crate) fn shared(board: &Board<'_>, emitter: Id<Net>, references: &[Id<Net>]
         if link.kind == LinkKind::Wire || !bridge.behind.contains(&emitter) {
             continue;
         }
-        let Some(&reference) = references.iter().find(|reference| bridge.behind.contains(reference)) else { continue };
-        let arrays = (0..board.arrays.len())
+        let lifted = |reference: &&Reference| {
+            let supplies = &reference.supplies;
+            let as_a_whole = !supplies.is_empty() && supplies.iter().all(|net| bridge.behind.contains(net));
+            bridge.behind.contains(&reference.net) && !as_a_whole
+        };
+        let lifted: Vec<&Reference> = references.iter().filter(lifted).collect();
+        if lifted.is_empty() {
+            continue;
+        }
+        let arrays: Vec<usize> = (0..board.arrays.len())
             .filter(|&array| board.arrays[array].emitters().any(|pin| bridge.behind.contains(&pin.net)))
             .collect();
         let ohms = match link.kind {
@@ -150,7 +329,12 @@ pub(crate) fn shared(board: &Board<'_>, emitter: Id<Net>, references: &[Id<Net>]
             LinkKind::Inductor => board.winding_ohms(link.element),
             _ => board.noted.element_ohms(link.element),
         };
-        shared.push(Shared { element: link.element, ohms, reference, arrays });
+        shared.extend(lifted.into_iter().map(|reference| Shared {
+            element: link.element,
+            ohms,
+            reference: reference.clone(),
+            arrays: arrays.clone(),
+        }));
     }
     shared
 }

@@ -1,16 +1,16 @@
 //! The sanity of a pin map: whether the board makes sense under it, and if not, which known wrong map would.
 
-use smallvec::SmallVec;
-
 use crate::base::table::Id;
 use crate::circuit::model::{Circuit, Net};
-use crate::connect::graph::Connectivity;
-use crate::connect::paths::At;
+use crate::connect::graph::{Connectivity, Hop};
+use crate::connect::link::LinkKind;
+use crate::connect::paths::{At, Reach};
 use crate::connect::rails::{Rails, Role as NetRole};
 use crate::parts::pins::Role;
 
 use super::array::{ArrayPin, Sanity, WrongMap};
 use super::nature::Natures;
+use super::returns::carries_return;
 
 /// What the test looks at.
 pub(crate) struct Ground<'a, 'p> {
@@ -24,68 +24,66 @@ pub(crate) struct Ground<'a, 'p> {
     pub natures: &'a Natures<'p>,
 }
 
-/// What a net looks like from a pin.
+/// What the net at a pin says of the pin.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 enum Looks {
     Return,
     Rail,
-    Driven,
-    Loaded,
-    Open,
+    Other,
 }
 
 impl Ground<'_, '_> {
-    /// Tests `pins`.
+    /// Tests `pins`. `by_number`: their roles rest on the order of the nodes, so that a neighbour means something.
     ///
-    /// It passes when an emitter pin is on a return and no clamp pin is, or when only weaker signs exist and none
-    /// speaks against it.
-    pub(crate) fn test(&self, pins: &[ArrayPin]) -> Sanity {
-        let nets = |wanted: fn(Role) -> bool| -> SmallVec<[Id<Net>; 4]> {
-            pins.iter().filter(|pin| wanted(pin.role)).map(|pin| pin.net).collect()
-        };
-        let emitters = nets(|role| role == Role::Emitter);
-        let clamps = nets(|role| matches!(role, Role::Clamp(_)));
-        let Some(&emitter) = emitters.first() else { return Sanity::Undecided };
-        let emitter_looks = self.looks(emitter);
-        let clamp_looks = clamps.first().map(|&net| self.looks(net));
-        if emitter_looks == Looks::Return && clamp_looks != Some(Looks::Return) {
-            return match self.sides(pins) {
-                Some(wrong) => Sanity::Explained(wrong),
-                None => Sanity::Passes,
-            };
-        }
-        if emitter_looks == Looks::Return {
-            // Both on a return: the clamp pin is tied wrongly, the map may be right all the same.
-            return Sanity::Passes;
-        }
-        if clamp_looks == Some(Looks::Return) {
-            // With the clamp pin on a return and the emitter on a rail the symbol has the two exchanged.
-            return if emitter_looks == Looks::Rail {
-                Sanity::Explained(WrongMap::EmitterClampExchanged)
-            } else {
-                Sanity::Fails
-            };
-        }
-        if self.shifted(pins) {
+    /// It passes when an emitter pin is on a return and no clamp pin is, and the sides are not exchanged. A map that
+    /// fails is explained only by a wrong one that passes.
+    pub(crate) fn test(&self, pins: &[ArrayPin], by_number: bool) -> Sanity {
+        let Some(emitter) = pins.iter().find(|pin| pin.role == Role::Emitter) else { return Sanity::Undecided };
+        let clamp = pins.iter().find(|pin| matches!(pin.role, Role::Clamp(_)));
+        let emitter_looks = self.emitter_looks(emitter.net);
+        let clamp_looks = clamp.map(|pin| self.looks(pin.net));
+        if by_number && self.shifted(pins, emitter, emitter_looks) {
             return Sanity::Explained(WrongMap::Shifted);
         }
-        Sanity::Undecided
+        match (emitter_looks, clamp_looks) {
+            // With both on a return the clamp pin is tied wrongly, and the map may be right all the same.
+            (Looks::Return, _) => self.sides(pins).map_or(Sanity::Passes, Sanity::Explained),
+            // With the clamp pin on a return and the emitter on a rail the symbol has the two exchanged.
+            (Looks::Rail, Some(Looks::Return)) if self.mirrored(pins) => Sanity::Explained(WrongMap::Mirrored),
+            (Looks::Rail, Some(Looks::Return)) => Sanity::Explained(WrongMap::EmitterClampExchanged),
+            (_, Some(Looks::Return)) => Sanity::Fails,
+            _ => Sanity::Undecided,
+        }
     }
 
-    /// Inputs that look like outputs and outputs that look like inputs, all of them; or numbers in net names that pair
-    /// up under the straight order and not under ours.
+    /// Inputs and outputs exchanged; or numbers in net names that pair up under the straight order and not under ours.
     fn sides(&self, pins: &[ArrayPin]) -> Option<WrongMap> {
         let side = |wanted: fn(Role) -> Option<u8>| -> Vec<(u8, Id<Net>)> {
             pins.iter().filter_map(|pin| Some((wanted(pin.role)?, pin.net))).collect()
         };
-        let inputs = side(|role| if let Role::Input(channel) = role { Some(channel) } else { None });
-        let outputs = side(|role| if let Role::Output(channel) = role { Some(channel) } else { None });
-        let loaded = |side: &[(u8, Id<Net>)]| side.iter().filter(|(_, net)| self.looks(*net) == Looks::Loaded).count();
-        let driven = |side: &[(u8, Id<Net>)]| side.iter().filter(|(_, net)| self.looks(*net) == Looks::Driven).count();
-        if loaded(&inputs) >= 2 && loaded(&outputs) == 0 && driven(&outputs) >= 2 && driven(&inputs) == 0 {
+        if self.mirrored(pins) {
             return Some(WrongMap::Mirrored);
         }
+        let inputs = side(|role| if let Role::Input(channel) = role { Some(channel) } else { None });
+        let outputs = side(|role| if let Role::Output(channel) = role { Some(channel) } else { None });
         self.straight(&inputs, &outputs).then_some(WrongMap::StraightOrder)
+    }
+
+    /// Loads hang on inputs that nothing drives, and what drives is on outputs without a load.
+    fn mirrored(&self, pins: &[ArrayPin]) -> bool {
+        let nets =
+            |output: bool| {
+                pins.iter()
+                    .filter(move |pin| {
+                        if output { matches!(pin.role, Role::Output(_)) } else { matches!(pin.role, Role::Input(_)) }
+                    })
+                    .map(|pin| pin.net)
+                    .filter(|&net| self.looks(net) == Looks::Other)
+            };
+        nets(false).any(|net| self.loaded(net))
+            && nets(true).any(|net| self.driven(net))
+            && !nets(false).any(|net| self.driven(net))
+            && !nets(true).any(|net| self.loaded(net))
     }
 
     fn straight(&self, inputs: &[(u8, Id<Net>)], outputs: &[(u8, Id<Net>)]) -> bool {
@@ -117,42 +115,98 @@ impl Ground<'_, '_> {
         name[name.len() - digits..].parse().ok()
     }
 
-    /// Whether the pins after the emitter and clamp pins look like what should be at them.
-    fn shifted(&self, pins: &[ArrayPin]) -> bool {
-        let net_of = |index: u16| pins.iter().find(|pin| pin.pin.index == index).map(|pin| pin.net);
-        let Some(emitter) = pins.iter().find(|pin| pin.role == Role::Emitter) else { return false };
-        let neighbours = [emitter.pin.index.checked_sub(1), Some(emitter.pin.index + 1)];
-        neighbours.into_iter().flatten().any(|index| {
-            let beside = if index < emitter.pin.index { index.checked_sub(1) } else { Some(index + 1) };
-            net_of(index).is_some_and(|net| self.looks(net) == Looks::Return)
-                && (index < emitter.pin.index
-                    || beside.and_then(net_of).is_some_and(|net| self.looks(net) == Looks::Rail))
-        })
+    /// Whether every node stands one place late, as in the order of a 20-pin package, or one place early.
+    fn shifted(&self, pins: &[ArrayPin], emitter: &ArrayPin, emitter_looks: Looks) -> bool {
+        let nodes = self.circuit.pins(emitter.pin.element);
+        let looks = |index: Option<usize>| index.and_then(|index| nodes.get(index)).map(|&net| self.looks(net));
+        let alone = |net: Option<&Id<Net>>| net.is_some_and(|&net| self.connectivity.pins(net).len() <= 1);
+        let at = usize::from(emitter.pin.index);
+        let Some(clamp) =
+            pins.iter().find(|pin| pin.pin.index == emitter.pin.index + 1 && matches!(pin.role, Role::Clamp(_)))
+        else {
+            return false;
+        };
+        let late = looks(Some(at + 1)) == Some(Looks::Return)
+            && looks(Some(at + 2)) == Some(Looks::Rail)
+            && alone(nodes.first());
+        let first_driven =
+            nodes.first().is_some_and(|&net| self.driven(net)) && pins.iter().all(|pin| pin.pin.index > 0);
+        let early = emitter_looks == Looks::Rail
+            && looks(at.checked_sub(1)) == Some(Looks::Return)
+            && self.looks(clamp.net) == Looks::Other
+            && (first_driven || self.loaded(clamp.net));
+        late || early
+    }
+
+    /// As [`Self::looks`]; an emitter pin may also be on its return through a sense resistor, a transistor or a switch.
+    fn emitter_looks(&self, net: Id<Net>) -> Looks {
+        let near = self.looks(net);
+        if near != Looks::Other {
+            return near;
+        }
+        let far = self.reach(net, carries_return);
+        let on = |wanted: Looks| far.nets.iter().any(|&net| self.own(net) == wanted);
+        if on(Looks::Return) && !on(Looks::Rail) { Looks::Return } else { Looks::Other }
     }
 
     fn looks(&self, net: Id<Net>) -> Looks {
-        let reach = self.connectivity.reach(
-            net,
-            |link, _| link.kind.is_low_resistance(),
-            |net| if self.rails.is_signal(net) { At::On } else { At::End },
-        );
-        for &net in &reach.nets {
-            match self.rails.role(net) {
-                NetRole::Return(_) => return Looks::Return,
-                NetRole::Rail(rail) if self.rails.rails[rail].level.is_some_and(|level| level.nominal.0 < 0.0) => {
-                    return Looks::Return;
-                }
-                NetRole::Rail(_) => return Looks::Rail,
-                NetRole::Signal => {}
+        let reach = self.reach(net, LinkKind::is_low_resistance);
+        reach.nets.iter().map(|&net| self.own(net)).find(|&looks| looks != Looks::Other).unwrap_or(Looks::Other)
+    }
+
+    /// What the net is by itself. A supply below the return is the return of what is fed across both.
+    fn own(&self, net: Id<Net>) -> Looks {
+        match self.rails.role(net) {
+            NetRole::Return(_) => Looks::Return,
+            NetRole::Rail(rail) if self.rails.rails[rail].level.is_some_and(|level| level.nominal.0 < 0.0) => {
+                Looks::Return
             }
+            NetRole::Rail(_) => Looks::Rail,
+            NetRole::Signal => Looks::Other,
         }
-        if self.connectivity.hops(net).any(|hop| self.connectivity.link(hop.link).kind.is_load()) {
-            return Looks::Loaded;
-        }
-        if self.connectivity.pins(net).iter().any(|pin| self.natures.kind(pin.element).is_foreign()) {
-            return Looks::Driven;
-        }
-        Looks::Open
+    }
+
+    /// Something that does work lies between the net and a supply, a resistor in series at most, and would draw current
+    /// into the net.
+    fn loaded(&self, net: Id<Net>) -> bool {
+        let link = |hop: &Hop| self.connectivity.link(hop.link).kind;
+        let resistive = |kind: LinkKind| matches!(kind, LinkKind::Resistor(_)) || kind.is_low_resistance();
+        let supplied = |net: Id<Net>| {
+            let reach = self.reach(net, |kind| resistive(kind) || kind.is_load());
+            reach.nets.iter().any(|&net| self.own(net) == Looks::Rail)
+        };
+        let works = |net: Id<Net>| {
+            self.connectivity
+                .hops(net)
+                .any(|hop| link(&hop).is_load() && link(&hop).passes_dc(!hop.forward) && supplied(hop.to))
+        };
+        let behind = |hop: Hop| resistive(link(&hop)) && self.rails.is_signal(hop.to) && works(hop.to);
+        works(net) || self.connectivity.hops(net).any(behind)
+    }
+
+    /// Something that drives, or may drive, is on the net, or behind resistors, diodes and contacts.
+    fn driven(&self, net: Id<Net>) -> bool {
+        let passes = |kind: LinkKind| {
+            kind.is_low_resistance()
+                || matches!(kind, LinkKind::Resistor(_) | LinkKind::Diode | LinkKind::Schottky | LinkKind::Led)
+        };
+        let drives = |kind| {
+            matches!(kind, LinkKind::Source(_) | LinkKind::CurrentSource | LinkKind::Transistor | LinkKind::Switch)
+        };
+        self.reach(net, passes).nets.iter().filter(|&&net| self.rails.is_signal(net)).any(|&net| {
+            self.circuit.nets[net].port
+                || self.connectivity.pins(net).iter().any(|pin| self.natures.kind(pin.element).is_foreign())
+                || self.connectivity.hops(net).any(|hop| drives(self.connectivity.link(hop.link).kind))
+        })
+    }
+
+    /// The nets that `net` reaches over links of the wanted kinds, no further than rails and returns.
+    fn reach(&self, net: Id<Net>, wanted: impl Fn(LinkKind) -> bool) -> Reach {
+        self.connectivity.reach(
+            net,
+            |link, _| wanted(link.kind),
+            |net| if self.rails.is_signal(net) { At::On } else { At::End },
+        )
     }
 }
 

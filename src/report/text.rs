@@ -252,7 +252,8 @@ fn closing(text: &mut String, review: &Review, look: Look) {
     let questions = review.judged.questions.len();
     let rest = match (tally.unproven, questions) {
         (0, _) => String::new(),
-        (_, 0) => "; the rest waits for what could not be read".to_owned(),
+        (_, 0) if review.read_in_part => "; the rest waits for what could not be read".to_owned(),
+        (_, 0) => "; the rest waits for what is told above".to_owned(),
         (_, 1) => "; 1 question settles the rest".to_owned(),
         (_, many) => format!("; {many} questions settle the rest"),
     };

@@ -3,6 +3,7 @@
 mod input;
 mod known;
 mod pipeline;
+mod silence;
 mod subjects;
 mod summary;
 
@@ -62,7 +63,8 @@ pub fn review(netlist: &Path, options: &Options) -> Vec<Review> {
 
 /// A library of eighty cells without a sink array is one line, not eighty.
 fn worth_telling(mut reviews: Vec<Review>) -> Vec<Review> {
-    let tells = |review: &Review| review.error.is_some() || !review.arrays.is_empty() || !review.judged.findings.is_empty();
+    let tells =
+        |review: &Review| review.error.is_some() || !review.arrays.is_empty() || !review.judged.findings.is_empty();
     if reviews.len() > 1 {
         let spare = reviews.iter().position(|review| !tells(review));
         if reviews.iter().any(tells) {

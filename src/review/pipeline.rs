@@ -6,16 +6,15 @@ use rayon::prelude::*;
 use rustc_hash::{FxHashMap, FxHashSet};
 
 use crate::base::notice::{Notice, Severity};
-use crate::base::sources::Sources;
 use crate::base::table::Id;
 use crate::circuit::model::{Circuit, Net};
 use crate::circuit::{self, Expanded, Limits};
 use crate::connect::graph::Connectivity;
-use crate::connect::rails::Rails;
+use crate::connect::rails::{NetNote, NotedRole, Rails};
 use crate::judge::card::Card;
 use crate::judge::fact::{Fact, SCOPES, Scope};
 use crate::judge::facts;
-use crate::judge::facts::rail::Joint;
+use crate::judge::facts::rail::{Fed, Joint};
 use crate::judge::predicate::Reach;
 use crate::judge::shelf::Shelf;
 use crate::judge::verdict::{Judge, Partial};
@@ -26,7 +25,7 @@ use crate::parts::library::Library;
 use crate::parts::pins::Role;
 use crate::recognise::array::Sanity;
 use crate::recognise::board::Board;
-use crate::recognise::definition::closed;
+use crate::recognise::definition::{Known, known};
 use crate::recognise::find::{Found, find};
 use crate::recognise::links::links;
 use crate::recognise::nature::Natures;
@@ -34,10 +33,11 @@ use crate::recognise::noted::{Directory, Noted};
 use crate::recognise::parallel::groups_of;
 use crate::recognise::sanity::Ground;
 use crate::recognise::site::Site;
+use crate::recognise::switched::switched_nodes;
 
 use super::input::Input;
 use super::known::Names;
-use super::{ArraySummary, NotJudged, Review, subjects, summary};
+use super::{ArraySummary, NotJudged, Review, silence, subjects, summary};
 
 /// The rules that come with the program, read once.
 struct Rules {
@@ -63,7 +63,7 @@ pub(super) fn shelf() -> (&'static [Card], &'static [Notice]) {
 pub(super) fn net_names(input: Input) -> Vec<String> {
     let Input { mut sources, root, .. } = input;
     let Ok(program) = circuit::load(&mut sources, &[root], &[], &Limits::BOARD) else { return Vec::new() };
-    let closed = closed(&program, &rules().library);
+    let closed = known(&program, &sources, &rules().library).closed;
     let Some(&board) = circuit::boards(&program, &closed).first() else { return Vec::new() };
     match circuit::expand(&program, &sources, board, &closed, &Limits::BOARD) {
         Ok(Expanded { circuit, .. }) => circuit
@@ -83,7 +83,7 @@ pub(super) fn net_names(input: Input) -> Vec<String> {
 struct Came {
     judged: Partial,
     summary: Option<ArraySummary>,
-    fed: Vec<(Id<Net>, String, bool)>,
+    fed: Vec<(Id<Net>, Fed)>,
     not_judged: Vec<NotJudged>,
 }
 
@@ -107,7 +107,7 @@ pub(super) fn run(name: &str, input: Input, held: bool) -> Vec<Review> {
             return vec![Review { sources: Arc::new(sources), ..Review::unreadable(name.to_owned(), *notice) }];
         }
     };
-    let closed = closed(&program, &rules.library);
+    let Known { closed, built_like } = known(&program, &sources, &rules.library);
     let boards = circuit::boards(&program, &closed);
     let sources = Arc::new(sources);
     notices.extend(program.notices.iter().cloned());
@@ -130,7 +130,7 @@ pub(super) fn run(name: &str, input: Input, held: bool) -> Vec<Review> {
                 Ok(expanded) => {
                     review.read_in_part = expanded.circuit.unread_lines > 0 || program.missing_files > 0;
                     if review.error.is_none() {
-                        judge_board(rules, expanded, &noted.1, held, &mut review);
+                        judge_board(rules, expanded, &noted.1, &built_like, held, &mut review);
                     }
                 }
                 Err(notice) => review.error = Some(*notice),
@@ -140,8 +140,15 @@ pub(super) fn run(name: &str, input: Input, held: bool) -> Vec<Review> {
         .collect()
 }
 
-/// Judges one flat circuit into `review`.
-fn judge_board(rules: &Rules, expanded: Expanded, notes: &Notes, held: bool, review: &mut Review) {
+/// Judges one flat circuit into `review`. `built_like` names closed definitions that are built like an array.
+fn judge_board(
+    rules: &Rules,
+    expanded: Expanded,
+    notes: &Notes,
+    built_like: &[String],
+    held: bool,
+    review: &mut Review,
+) {
     let Expanded { circuit, notices } = expanded;
     review.problems.extend(notices);
     let directory = has_names(notes).then(|| Directory::of(&circuit));
@@ -150,7 +157,13 @@ fn judge_board(rules: &Rules, expanded: Expanded, notes: &Notes, held: bool, rev
     let natures = Natures::find(&circuit, &rules.library, &profiles);
     let outputs = output_nets(&circuit, &natures, &noted);
     let connectivity = Connectivity::build(&circuit, links(&circuit, &natures, &noted, &outputs));
-    let rails = Rails::find(&circuit, &connectivity, &noted.rails(notes, directory.as_ref()));
+    let mut net_notes = noted.rails(notes, directory.as_ref());
+    for node in switched_nodes(&circuit, &connectivity, &natures, &outputs) {
+        if let Err(at) = net_notes.binary_search_by_key(&node, |(net, _)| *net) {
+            net_notes.insert(at, (node, NetNote { role: Some(NotedRole::Signal), ..NetNote::default() }));
+        }
+    }
+    let rails = Rails::find(&circuit, &connectivity, &net_notes);
     let ground = Ground { circuit: &circuit, connectivity: &connectivity, rails: &rails, natures: &natures };
     let Found { arrays, without_roles } = find(&ground, &noted);
     if let Some(directory) = &directory {
@@ -167,21 +180,28 @@ fn judge_board(rules: &Rules, expanded: Expanded, notes: &Notes, held: bool, rev
     let arrays: Vec<Came> =
         (0..board.arrays.len()).into_par_iter().map(|number| array(&board, number, &judge, &whole)).collect();
     let mut judged = Partial::default();
-    let mut fed: FxHashMap<Id<Net>, (Vec<String>, bool)> = FxHashMap::default();
+    let mut fed: FxHashMap<Id<Net>, Fed> = FxHashMap::default();
     for came in arrays {
         judged.join(came.judged);
         review.arrays.extend(came.summary);
         review.not_judged.extend(came.not_judged);
-        for (net, array, switched) in came.fed {
-            let entry = fed.entry(net).or_default();
-            if entry.0.last() != Some(&array) {
-                entry.0.push(array);
-            }
-            entry.1 |= switched;
+        for (net, of_load) in came.fed {
+            fed.entry(net).or_default().join(of_load);
         }
     }
     if !board.arrays.is_empty() {
         rails_of(&board, &fed, &judge, &whole, &mut judged);
+    }
+    for array in board.arrays.iter().filter(|array| array.elements.len() == 1) {
+        let mut slots = Vec::new();
+        let element = array.elements[0];
+        facts::part::Part::of_array(&board, element, array.profile).into_slots(&mut slots);
+        judge.subject(
+            Scope::Part,
+            &|| subjects::part(&board, element),
+            &reach(&[(Scope::Part, &slots), (Scope::Board, &whole)]),
+            &mut judged,
+        );
     }
     for (element, profile, why) in without_roles {
         let mut slots = Vec::new();
@@ -193,7 +213,7 @@ fn judge_board(rules: &Rules, expanded: Expanded, notes: &Notes, held: bool, rev
             &mut judged,
         );
     }
-    for (element, profile) in board.near_arrays() {
+    for (element, profile) in board.near_arrays(built_like) {
         let mut slots = Vec::new();
         facts::part::Part::near(&board, element, profile).into_slots(&mut slots);
         judge.subject(
@@ -203,6 +223,7 @@ fn judge_board(rules: &Rules, expanded: Expanded, notes: &Notes, held: bool, rev
             &mut judged,
         );
     }
+    review.not_judged.extend(silence::of_board(&board));
     review.assumptions = assumptions(&board);
     review.judged = judged.finish(&rules.shelf);
 }
@@ -240,6 +261,7 @@ fn array(board: &Board<'_>, number: usize, judge: &Judge<'_>, whole: &[Fact]) ->
     came.summary = Some(summary::array(&site));
     // Cause before effect: under a pin map that cannot be right every other fact is a guess.
     let doubt = matches!(site.array.sanity, Sanity::Explained(_)) && !facts::record::pins_confirmed(&site);
+    came.not_judged = silence::of_array(&site, doubt);
     let reason = format!("the pin map of {} is in doubt", site.array.refdes);
     let doubted = |slots: Vec<Fact>| {
         if doubt { slots.iter().map(|_| Fact::reason(reason.clone(), Some(site.array.span))).collect() } else { slots }
@@ -264,9 +286,8 @@ fn array(board: &Board<'_>, number: usize, judge: &Judge<'_>, whole: &[Fact]) ->
             let around = [(Scope::Load, &load_slots[..]), around[0], around[1], around[2]];
             judge.subject(Scope::Load, &|| subjects::load(&site, channel, load), &reach(&around), out);
             if let crate::recognise::load::Supply::Rail(net) = load.supply {
-                let switched = load.kind.is_inductive() == Some(true);
                 let net = board.rails.rail(net).map_or(net, |rail| rail.net);
-                came.fed.push((net, site.array.refdes.clone(), switched));
+                came.fed.push((net, Fed::by(&site, load)));
             }
         }
     }
@@ -304,24 +325,18 @@ fn array(board: &Board<'_>, number: usize, judge: &Judge<'_>, whole: &[Fact]) ->
 }
 
 /// Judges every rail, and every pair of rails that something joins.
-fn rails_of(
-    board: &Board<'_>,
-    fed: &FxHashMap<Id<Net>, (Vec<String>, bool)>,
-    judge: &Judge<'_>,
-    whole: &[Fact],
-    out: &mut Partial,
-) {
+fn rails_of(board: &Board<'_>, fed: &FxHashMap<Id<Net>, Fed>, judge: &Judge<'_>, whole: &[Fact], out: &mut Partial) {
     for (_, rail) in board.rails.rails.iter() {
-        let (arrays, switched) = fed.get(&rail.net).cloned().unwrap_or_default();
+        let fed = fed.get(&rail.net).cloned().unwrap_or_default();
         let mut slots = Vec::new();
-        facts::rail::Supply::of(board, rail, switched, None).into_slots(&mut slots);
+        facts::rail::Supply::of(board, rail, &fed, None).into_slots(&mut slots);
         let around = reach(&[(Scope::Rail, &slots), (Scope::Board, whole)]);
-        judge.subject(Scope::Rail, &|| subjects::rail(board, &[rail.net], &arrays), &around, out);
+        judge.subject(Scope::Rail, &|| subjects::rail(board, &[rail.net], &fed.arrays), &around, out);
         for joint in Joint::of(board, rail) {
             let mut slots = Vec::new();
-            facts::rail::Supply::of(board, rail, switched, Some(&joint)).into_slots(&mut slots);
+            facts::rail::Supply::of(board, rail, &fed, Some(&joint)).into_slots(&mut slots);
             let around = reach(&[(Scope::Rail, &slots), (Scope::Board, whole)]);
-            judge.subject(Scope::Rail, &|| subjects::rail(board, &[rail.net, joint.other], &arrays), &around, out);
+            judge.subject(Scope::Rail, &|| subjects::rail(board, &[rail.net, joint.other], &fed.arrays), &around, out);
         }
     }
 }

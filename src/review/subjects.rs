@@ -99,10 +99,10 @@ pub(super) fn driver(board: &Board<'_>, net: Id<Net>) -> Subject {
     }
 }
 
-/// A rail, or a pair of rails: `rail:+12V`, `rail:+5V+rail:+12V`. Its place is its voltage and the arrays that it feeds.
+/// A rail, or a pair of rails: `rail:+12V`, `rail:+12V+rail:+5V`. Its place is its voltage and the arrays that it feeds.
 pub(super) fn rail(board: &Board<'_>, nets: &[Id<Net>], arrays: &[String]) -> Subject {
     let mut names: Vec<String> = nets.iter().map(|&net| format!("rail:{}", board.circuit.net_name(net))).collect();
-    names.sort_by(|a, b| natural(a, b));
+    names.sort();
     let volts: Vec<String> = nets
         .iter()
         .map(|&net| {

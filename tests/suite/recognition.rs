@@ -11,7 +11,8 @@ fn judged(netlist: &str) -> Vec<Value> {
     let file = folder.path().join("board.cir");
     fs::write(&file, netlist).expect("the board can be written");
     let mut out = Vec::new();
-    write_reviews(&mut out, review(&file, &Options::default()).into_iter(), Format::Json, Look::default()).expect("JSON is written");
+    write_reviews(&mut out, review(&file, &Options::default()).into_iter(), Format::Json, Look::default())
+        .expect("JSON is written");
     let report: Value = serde_json::from_slice(&out).expect("it is JSON");
     report["boards"].as_array().cloned().unwrap_or_default()
 }
@@ -29,7 +30,8 @@ fn seen(netlist: &str) -> Vec<String> {
                     .into_iter()
                     .flatten()
                     .map(|load| {
-                        let elements: Vec<String> = load["elements"].as_array().into_iter().flatten().map(text).collect();
+                        let elements: Vec<String> =
+                            load["elements"].as_array().into_iter().flatten().map(text).collect();
                         format!("{} {}@{}", text(&load["kind"]), elements.join("+"), text(&load["supply"]))
                     })
                     .collect();
@@ -152,5 +154,42 @@ fn a_relay_whose_pins_nobody_names_has_its_coil_between_rail_and_output() {
     check(
         "board\nU1 A1 A2 A3 A4 A5 A6 A7 GND +12V Y7 Y6 Y5 Y4 Y3 Y2 Y1 ULN2003A\nK1 NO1 COM1 NC1 Y1 +12V G5V\n",
         &["U1 x2003 pin-numbers", "  ch1 A1 > Y1: relay-coil K1@+12V"],
+    );
+}
+
+#[test]
+fn a_coil_drawn_as_resistor_and_inductor_in_a_subcircuit_is_one_load_whatever_its_middle_is_called() {
+    check(
+        "Gates\nV1 +24V 0 24\nV2 EN1 0 PULSE(0 5 0 1u 1u 10m 20m)\n.subckt GATE A B\nL1 A M 150m\nR1 M B 82\n.ends\n\
+         XY1 +24V OUT1 GATE\nXU1 EN1 0 0 0 0 0 0 0 +24V N7 N6 N5 N4 N3 N2 OUT1 ULN2003A\n",
+        &["U1 x2003 pin-numbers", "  ch1 EN1 > OUT1: inductor Y1/L1+Y1/R1@+24V"],
+    );
+}
+
+#[test]
+fn a_valve_may_bear_the_designator_of_a_crystal() {
+    check(
+        "Valves\nV1 +24V 0 24\nV2 EN1 0 PULSE(0 5 0 1u 1u 10m 20m)\nXY1 +24V OUT1 SOLENOID24\n.subckt SOLENOID24 A B\n.ends\n\
+         YV2 +24V OUT2 MODEL_7\nXU1 EN1 EN1 0 0 0 0 0 0 +24V N7 N6 N5 N4 N3 OUT2 OUT1 ULN2003A\n",
+        &["U1 x2003 pin-numbers", "  ch1 EN1 > OUT1: solenoid Y1@+24V", "  ch2 EN1 > OUT2: solenoid YV2@+24V"],
+    );
+}
+
+#[test]
+fn an_array_of_sources_passes_its_rail_on() {
+    check(
+        "Lamps\nV1 +12V 0 12\nV2 EN1 0 PULSE(0 5 0 1u 1u 10m 20m)\n\
+         U2 ROW 0 0 0 0 0 0 0 +12V 0 N18 N17 N16 N15 N14 N13 N12 HIGH UDN2981A\nLA1 HIGH OUT1 LAMP\n\
+         XU1 EN1 0 0 0 0 0 0 0 +12V N7 N6 N5 N4 N3 N2 OUT1 ULN2003A\n",
+        &["U1 x2003 pin-numbers", "  ch1 EN1 > OUT1: lamp LA1@+12V"],
+    );
+}
+
+#[test]
+fn a_supply_that_ramps_up_is_a_rail_and_a_pulse_on_an_input_is_none() {
+    check(
+        "Ramp\nV1 +12V 0 PWL(0 0 1m 12)\nV2 EN1 0 PULSE(0 5 0 1u 1u 10m 20m)\nK1 +12V OUT1 RELAY_12V\n\
+         XU1 EN1 0 0 0 0 0 0 0 +12V N7 N6 N5 N4 N3 N2 OUT1 ULN2003A\n",
+        &["U1 x2003 pin-numbers", "  ch1 EN1 > OUT1: relay-coil K1@+12V"],
     );
 }

@@ -14,13 +14,14 @@ pub(crate) fn load(board: &Board<'_>, load: &Load) -> Question {
         let answer = format!("[[loads]] at = \"{}\", kind = \"…\", supply = \"…\", ohms = …", board.pin_name(pin));
         return Question { at: refdes, asks: "what load?", answer };
     }
-    let at = load_name(board, load);
-    let place = match load.supply.net() {
-        Some(net) => format!("net:{}", board.circuit.net_name(net)),
-        None => at.clone(),
-    };
-    Question {
-        answer: format!("[[loads]] at = \"{place}\", kind = \"…\", supply = \"…\""), at, asks: "what feeds it?"
+    match load.supply.net() {
+        // Asked of the net, one answer serves every load on it.
+        Some(net) => where_leads(board, net),
+        None => {
+            let at = load_name(board, load);
+            let answer = format!("[[loads]] at = \"{at}\", kind = \"…\", supply = \"…\"");
+            Question { answer, at, asks: "what feeds it?" }
+        }
     }
 }
 
@@ -95,6 +96,36 @@ pub(crate) fn returns_joined(board: &Board<'_>, a: Id<Net>, b: Id<Net>) -> Quest
     }
 }
 
+/// Does this part join these two nets?
+pub(crate) fn returns_joined_at(board: &Board<'_>, a: Id<Net>, b: Id<Net>, part: Id<Element>) -> Question {
+    let asked = returns_joined(board, a, b);
+    Question { at: format!("{} at {}", asked.at, board.circuit.refdes(part)), asks: "joined there?", ..asked }
+}
+
+/// Which return does the current of this rail come back to?
+pub(crate) fn rail_return(board: &Board<'_>, net: Id<Net>) -> Question {
+    let name = board.circuit.net_name(net);
+    Question {
+        answer: format!("[rails.\"{name}\"] return = \"…\""), at: name, asks: "where does its current return?"
+    }
+}
+
+/// How far may this reference be lifted?
+pub(crate) fn shift_of(board: &Board<'_>, net: Id<Net>) -> Question {
+    let name = board.circuit.net_name(net);
+    Question { answer: format!("[nets.\"{name}\"] shift_v = …"), at: name, asks: "how far may it shift?" }
+}
+
+/// Is this jumper closed?
+pub(crate) fn jumper(board: &Board<'_>, element: Id<Element>) -> Question {
+    let refdes = board.circuit.refdes(element);
+    Question {
+        answer: format!("[parts.{refdes}] fitted = false, or ohms = 0.0 where it is closed"),
+        at: refdes,
+        asks: "is it closed?",
+    }
+}
+
 /// Which logic family drives the inputs of this array?
 pub(crate) fn driver_family(site: &Site<'_>, reference: Option<Id<Net>>) -> Question {
     let part = site.driving_part();
@@ -105,11 +136,7 @@ pub(crate) fn driver_family(site: &Site<'_>, reference: Option<Id<Net>>) -> Ques
             asks: "which logic family?",
             answer: format!("[parts.{}] driver = \"…\"", board.circuit.refdes(part)),
         },
-        (None, Some(net)) => Question {
-            at: board.circuit.net_name(net),
-            asks: "how far may it shift?",
-            answer: format!("[nets.{}] shift_v = …", board.circuit.net_name(net)),
-        },
+        (None, Some(net)) => shift_of(board, net),
         (None, None) => inputs_of(site),
     }
 }

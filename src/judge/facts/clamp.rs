@@ -10,6 +10,7 @@ use crate::recognise::array::ArrayPin;
 use crate::recognise::board::Board;
 use crate::recognise::load::{Load, Supply};
 use crate::recognise::site::Site;
+use crate::recognise::turn_off::Target;
 
 use super::ask;
 
@@ -38,7 +39,14 @@ impl Clamp {
         let clamps: Vec<&ArrayPin> = site.array.clamps().collect();
         let names: Vec<String> = clamps.iter().map(|pin| board.circuit.net_name(pin.net)).collect();
         let loads = || site.channels.iter().flat_map(|channel| &channel.hanging.loads);
-        let series = clamps.iter().find_map(|pin| Series::of(site, pin.net));
+        // At the coils' own supply nothing lies between, whatever comes before both.
+        let at_supply = site.channels.iter().all(|channel| {
+            channel
+                .loads()
+                .filter(|(load, _)| load.kind.is_inductive() == Some(true))
+                .all(|(_, ways)| ways.by_clamp().any(|way| way.target == Target::OtherEnd && way.path.hops.is_empty()))
+        });
+        let series = if at_supply { None } else { clamps.iter().find_map(|pin| Series::of(site, pin.net)) };
         let current: Option<f64> =
             loads().filter(|load| load.kind.is_inductive() == Some(true)).map(|load| amps(board, load)).sum();
         let ohms = series.as_ref().map_or(Some(0.0), |series| series.ohms);
@@ -81,7 +89,7 @@ impl Series {
     /// What lies between `clamp` and the nearest rail; none where it is on the rail, or a diode or zener leads there.
     fn of(site: &Site<'_>, clamp: Id<Net>) -> Option<Self> {
         let board = site.board;
-        if !board.rails.is_signal(clamp) {
+        if !board.rails.is_signal(clamp) || hang_on(site, clamp) {
             return None;
         }
         let found = board.connectivity.paths(
@@ -117,9 +125,25 @@ impl Series {
     }
 }
 
+/// Whether every coil gets its current by way of the clamp pin's own copper: what opens before it opens for both.
+fn hang_on(site: &Site<'_>, clamp: Id<Net>) -> bool {
+    let same = |net: Id<Net>| site.board.connectivity.same(net, clamp);
+    let mut coils = site.channels.iter().flat_map(|channel| {
+        let loads = channel.hanging.loads.iter().filter(|load| load.kind.is_inductive() == Some(true));
+        loads.map(move |load| load.branches.iter().filter_map(|&row| channel.hanging.branches.list.get(row)))
+    });
+    coils.all(|mut ways| ways.any(|way| way.path.hops.iter().any(|hop| same(hop.to))))
+}
+
 /// A clamp pin on a return through copper or next to nothing; a search from the pin that stops at rails.
 fn on_return(site: &Site<'_>, clamps: &[&ArrayPin]) -> Fact {
     let board = site.board;
+    // With the emitter pin on a negative rail the return is the loads' supply: the clamp pin belongs there.
+    let negative =
+        |net: Id<Net>| board.rails.rail(net).and_then(|rail| rail.level).is_some_and(|level| level.nominal.0 < 0.0);
+    if site.array.emitters().any(|pin| negative(pin.net)) {
+        return Fact::flag(false);
+    }
     for pin in clamps {
         let reach = board.connectivity.reach(
             pin.net,
@@ -145,6 +169,14 @@ fn fed(site: &Site<'_>, clamps: &[&ArrayPin]) -> Fact {
     for pin in clamps {
         let net = pin.net;
         if !board.rails.is_signal(net) || board.may_lead_on(net) || board.circuit.nets[net].global {
+            return Fact::flag(true);
+        }
+        // A switch, a zener or a transistor there is a lamp test or a clamp towards the return: somebody meant it.
+        let meant = board.connectivity.hops(net).any(|hop| {
+            let kind = board.connectivity.link(hop.link).kind;
+            matches!(kind, LinkKind::Switch | LinkKind::Zener(_) | LinkKind::Suppressor(_) | LinkKind::Transistor)
+        });
+        if meant {
             return Fact::flag(true);
         }
         if let Some(gap) = ask::unread(board, net) {

@@ -7,6 +7,7 @@ pub(crate) mod ask;
 pub(crate) mod board;
 pub(crate) mod clamp;
 pub(crate) mod driver;
+pub(crate) mod emitter;
 pub(crate) mod input;
 pub(crate) mod output;
 pub(crate) mod parallel;
@@ -24,7 +25,7 @@ use crate::recognise::parallel::Group;
 use crate::recognise::site::{ChannelSite, Site};
 use crate::recognise::turn_off::Ways;
 
-use super::fact::{Fact, FactDef};
+use super::fact::{Fact, FactDef, FactValue};
 
 /// Every group of facts. Groups of one scope fill its slots in this order.
 pub(crate) const GROUPS: &[&[FactDef]] = &[
@@ -32,6 +33,7 @@ pub(crate) const GROUPS: &[&[FactDef]] = &[
     rail::Supply::DEFS,
     part::Part::DEFS,
     record::Record::DEFS,
+    emitter::Emitter::DEFS,
     clamp::Clamp::DEFS,
     spare::Spare::DEFS,
     input::Input::DEFS,
@@ -45,9 +47,9 @@ pub(crate) const GROUPS: &[&[FactDef]] = &[
 
 /// The slots of an array. Under a pin map in doubt only what the record says counts; the rest waits for `doubt`.
 pub(crate) fn array(site: &Site<'_>, doubt: Option<&str>) -> Vec<Fact> {
-    let mut slots =
-        Vec::with_capacity(record::Record::DEFS.len() + clamp::Clamp::DEFS.len() + spare::Spare::DEFS.len());
+    let mut slots = Vec::new();
     record::Record::of(site).into_slots(&mut slots);
+    emitter::Emitter::of(site).into_slots(&mut slots);
     clamp::Clamp::of(site).into_slots(&mut slots);
     spare::Spare::of(site).into_slots(&mut slots);
     if let Some(reason) = doubt {
@@ -74,6 +76,13 @@ pub(crate) fn channel(site: &Site<'_>, channel: &ChannelSite<'_>) -> Vec<Fact> {
 pub(crate) fn load(site: &Site<'_>, channel: &ChannelSite<'_>, load: &Load, ways: &Ways) -> Vec<Fact> {
     let mut slots = Vec::with_capacity(turn_off::TurnOff::DEFS.len() + supply::Feed::DEFS.len());
     turn_off::TurnOff::of(site, channel, load, ways).into_slots(&mut slots);
+    // Cause before effect: what a load without a supply would do is not judged.
+    if supply::is_stranded(site, channel, load) {
+        let reason = format!("{} gets no current as drawn", ask::load_name(site.board, load));
+        for slot in slots.iter_mut().filter(|slot| !matches!(slot.value, FactValue::Text(_) | FactValue::Texts(_))) {
+            *slot = Fact::reason(reason.clone(), None);
+        }
+    }
     supply::Feed::of(site, channel, load, ways).into_slots(&mut slots);
     slots
 }

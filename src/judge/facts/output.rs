@@ -3,10 +3,11 @@
 use crate::base::table::Id;
 use crate::circuit::model::Net;
 use crate::connect::link::LinkKind;
-use crate::connect::rails::Origin;
-use crate::judge::fact::{Fact, Gap, Interval, facts};
+use crate::judge::fact::{Fact, Interval, facts};
 use crate::recognise::board::PinUse;
 use crate::recognise::branch::{Branch, End};
+use crate::recognise::driver::{DriverKind, Drivers};
+use crate::recognise::load::{Load, Supply};
 use crate::recognise::site::{ChannelSite, Site};
 
 use super::ask;
@@ -15,13 +16,15 @@ use super::volts::rail_volts;
 facts! {
     /// What a channel's output is joined to.
     pub(crate) struct Output in Channel {
+        switched: Flag, "Something that can turn the channel on drives its input, or the part is fed serially.";
+        output_pin: Text, "The output's pin: by name where the netlist names it, by number otherwise.";
         output_on_rail: Flag, "The output is tied to a supply net with no load between.";
-        output_rail: Text, "That supply net.";
-        output_rail_volts: Number("V"), "Its voltage.";
+        output_rail: Text, "The supply net that the output is tied to.";
+        output_rail_volts: Number("V"), "Voltage of the supply net that the output is tied to.";
         output_on_return: Flag, "The output is tied to a return.";
-        output_return: Text, "That return.";
+        output_return: Text, "The return that the output is tied to.";
         output_driven: Flag, "A part that pulls both ways, or a source, drives the output's net.";
-        output_driver: Text, "That part's pin.";
+        output_driver: Text, "The pin or source that drives the output's net.";
         output_driver_ohms: Number("ohm"), "Resistance between that driver and the output.";
         safety: Flag, "The notes say that one of the channel's loads must never be on by mistake.";
     }
@@ -35,7 +38,12 @@ impl Output {
         let (on_return, ground) = tied(site, channel, |end| if let End::Return(net) = end { Some(net) } else { None });
         let driver = driver(site, channel);
         Self {
-            output_on_rail: on_rail,
+            switched: Fact::flag(is_switched(channel)),
+            output_pin: Fact::text(board.pin_words(channel.channel.output.pin)),
+            output_on_rail: match rail {
+                Some(net) if !proves_rail(site, net) => Fact::ask(super::volts::volts_question(board, net)),
+                _ => on_rail,
+            },
             output_rail: Fact::text(rail.map_or(String::new(), |net| board.circuit.net_name(net))),
             output_rail_volts: match rail {
                 Some(net) => rail_volts(board, net),
@@ -62,23 +70,8 @@ impl Output {
 fn tied(site: &Site<'_>, channel: &ChannelSite<'_>, wanted: fn(End) -> Option<Id<Net>>) -> (Fact, Option<Id<Net>>) {
     let board = site.board;
     let output = channel.output();
-    // The output's own net may be the rail or the return itself.
-    let own = if board.rails.rail(output).is_some() {
-        wanted(End::Rail(output))
-    } else if board.rails.is_return(output) {
-        wanted(End::Return(output))
-    } else {
-        None
-    };
-    let net = own.or_else(|| {
-        channel
-            .hanging
-            .branches
-            .list
-            .iter()
-            .filter(|branch| branch.is_bare(board))
-            .find_map(|branch| wanted(branch.end))
-    });
+    let bare = channel.hanging.branches.list.iter().filter(|branch| branch.is_bare(board));
+    let net = bare.filter_map(|branch| wanted(branch.end)).next();
     match net {
         Some(net) => {
             let fact = Fact::flag(true)
@@ -91,6 +84,22 @@ fn tied(site: &Site<'_>, channel: &ChannelSite<'_>, wanted: fn(End) -> Option<Id
             _ => (Fact::flag(false), None),
         },
     }
+}
+
+/// Whether something that can turn the channel on drives an input of it. A part that is fed serially has no inputs.
+fn is_switched(channel: &ChannelSite<'_>) -> bool {
+    let on = |drivers: &Drivers| drivers.list.iter().any(|driver| driver.kind != DriverKind::Return);
+    channel.channel.inputs.is_empty() || channel.drivers.iter().any(on)
+}
+
+/// Whether the net is a supply beyond doubt: its volts are known, or a load or a clamp pin has its supply from it.
+fn proves_rail(site: &Site<'_>, net: Id<Net>) -> bool {
+    let board = site.board;
+    let known = board.rails.rail(net).is_some_and(|rail| rail.level.is_some());
+    let same = |other: Id<Net>| board.connectivity.same(net, other);
+    let clamps = || site.array.clamps().any(|pin| same(pin.net));
+    let feeds = |load: &Load| matches!(load.supply, Supply::Rail(rail) if same(rail));
+    known || clamps() || site.channels.iter().flat_map(|channel| &channel.hanging.loads).any(feeds)
 }
 
 /// A driver on an output's net.
@@ -128,11 +137,4 @@ fn driver(site: &Site<'_>, channel: &ChannelSite<'_>) -> Option<Driver> {
             place: board.circuit.elements[moving.0.element].span,
         })
     })
-}
-
-/// The gap of a net whose voltage is known only by its name.
-pub(crate) fn by_name_only(site: &Site<'_>, net: Id<Net>) -> Option<Gap> {
-    let rail = site.board.rails.rail(net)?;
-    let level = rail.level?;
-    (level.origin == Origin::Name).then(|| Gap::Question(super::volts::volts_question(site.board, net)))
 }

@@ -16,10 +16,13 @@ facts! {
         profile: Text, "The part profile that its type names, or nearly names.";
         known: Flag, "Its type names a part profile.";
         fits: Flag, "Its node count fits a pin map of that profile.";
-        fitting: Texts, "The node counts that would fit.";
+        fitting: Text, "The node counts that would fit.";
         looks_like_array: Flag, "Its type is nearly that of a sink array, and no profile knows it.";
     }
 }
+
+/// Up to this many nodes an instance may be one channel or one gate of a part: inputs, output, emitter, clamp, supply.
+const CELL_NODES: usize = 6;
 
 impl Part {
     /// An array by type whose node count fits no pin map.
@@ -32,10 +35,25 @@ impl Part {
         Self {
             known: Fact::flag(true),
             fits: match why {
+                // So few nodes: a gate or one channel, its pins not named.
+                NoRoles::Count if board.circuit.pins(element).len() <= CELL_NODES => {
+                    Fact::ask(super::ask::pins_of(board, element))
+                }
                 NoRoles::Count => Fact::flag(false).at(place, "this many nodes"),
                 NoRoles::NoMap => Fact::ask(super::ask::pins_of(board, element)),
             },
-            fitting: Fact::texts(counts.iter().map(|count| count.to_string().into()).collect()),
+            fitting: Fact::text(counts.iter().map(ToString::to_string).collect::<Vec<_>>().join(" or ")),
+            looks_like_array: Fact::flag(false),
+            ..Self::common(board, element, profile)
+        }
+    }
+
+    /// An array whose pins have roles.
+    pub(crate) fn of_array(board: &Board<'_>, element: Id<Element>, profile: &Profile) -> Self {
+        Self {
+            known: Fact::flag(true),
+            fits: Fact::flag(true).at(board.circuit.elements[element].span, "its nodes"),
+            fitting: Fact::text(""),
             looks_like_array: Fact::flag(false),
             ..Self::common(board, element, profile)
         }
@@ -46,7 +64,7 @@ impl Part {
         Self {
             known: Fact::flag(false),
             fits: Fact::flag(true),
-            fitting: Fact::texts(Vec::new()),
+            fitting: Fact::text(""),
             looks_like_array: Fact::flag(true).at(board.circuit.elements[element].span, "its type"),
             ..Self::common(board, element, profile)
         }

@@ -1,4 +1,4 @@
-//! Facts of an array: what it is, how its pins are known, and where its emitter pin and own supply pin stand.
+//! Facts of an array: what it is, how its pins are known, and where its own supply and control pins stand.
 
 use crate::base::table::Id;
 use crate::circuit::model::Net;
@@ -6,7 +6,7 @@ use crate::connect::paths::At;
 use crate::connect::rails::Role as NetRole;
 use crate::judge::fact::{Fact, Interval, facts};
 use crate::parts::pins::{Control, Role};
-use crate::recognise::array::{ArrayPin, PinsFrom, Sanity};
+use crate::recognise::array::{ArrayPin, PinsFrom, Sanity, WrongMap};
 use crate::recognise::board::Board;
 use crate::recognise::driver::{DriverKind, Drivers};
 use crate::recognise::site::Site;
@@ -15,7 +15,7 @@ use super::ask;
 use super::volts::rail_volts;
 
 facts! {
-    /// What an array is, how its pins are known, and where its emitter and supply pins stand.
+    /// What an array is, how its pins are known, and where its supply and control pins stand.
     pub(crate) struct Record in Array {
         name: Text, "The array's designator.";
         part_type: Text, "Its type as the netlist spells it.";
@@ -25,12 +25,7 @@ facts! {
         pins_make_sense: Flag, "Emitter on a return, clamp pin on none, inputs at the drivers: the order passes the sanity test.";
         pins_swapped: Flag, "The order fails the sanity test, and a known wrong order explains what is drawn.";
         pins_swapped_how: Text, "That wrong order in words.";
-        has_emitter: Flag, "The instance shows an emitter pin.";
-        emitter_net: Text, "The net or nets at the emitter pin.";
-        emitter_open: Flag, "Nothing else is on the emitter pin's net.";
-        emitter_above: Flag, "The emitter pin is joined to a supply net, above the loads' return.";
-        ground_pins_open: Text, "Emitter or clamp pins that are open while others of the same kind are tied.";
-        ground_pins_partial: Flag, "One of several emitter or clamp pins is open.";
+        pins_doubt: Text, "Where the order leaves the emitter pin and the clamp pin, in words.";
         has_supply_pin: Flag, "The part has a supply pin of its own, and the instance shows it.";
         supply_net: Text, "The net at the part's own supply pin.";
         supply_open: Flag, "Nothing feeds the part's own supply pin.";
@@ -47,7 +42,7 @@ facts! {
 }
 
 /// Facts that stand while the pin map is in doubt: they speak of the map itself.
-pub(crate) const STANDS_IN_DOUBT: [&str; 8] = [
+pub(crate) const STANDS_IN_DOUBT: [&str; 9] = [
     "name",
     "part_type",
     "profile",
@@ -56,18 +51,17 @@ pub(crate) const STANDS_IN_DOUBT: [&str; 8] = [
     "pins_make_sense",
     "pins_swapped",
     "pins_swapped_how",
+    "pins_doubt",
 ];
 
 impl Record {
     /// The facts of one array.
     pub(crate) fn of(site: &Site<'_>) -> Self {
         let (board, array) = (site.board, site.array);
-        let emitters: Vec<&ArrayPin> = array.emitters().collect();
         let supply = array.pins.iter().find(|pin| pin.role == Role::Supply);
         let controls = controls(site);
         let open: Vec<&str> =
             controls.iter().filter(|(_, drivers)| !drivers.any()).map(|(pin, _)| control_name(pin)).collect();
-        let partial = partial(site);
         let limits = array.profile.supply.as_ref();
         let limit = |value: Option<(f64, String)>| match value {
             Some((value, source)) => Fact::number(value).source(source),
@@ -83,13 +77,8 @@ impl Record {
                 .at(array.span, "the array"),
             pins_swapped: Fact::flag(matches!(array.sanity, Sanity::Explained(_)) && !pins_confirmed(site))
                 .at(array.span, "the array"),
+            pins_doubt: Fact::text(doubt(site)),
             pins_swapped_how: Fact::text(if let Sanity::Explained(wrong) = array.sanity { wrong.words() } else { "" }),
-            has_emitter: Fact::flag(!emitters.is_empty()),
-            emitter_net: Fact::text(names(board, &emitters)),
-            emitter_open: emitter_open(site, &emitters),
-            emitter_above: emitter_above(site, &emitters),
-            ground_pins_partial: Fact::flag(!partial.is_empty()).at(array.span, "the array"),
-            ground_pins_open: Fact::text(partial.join(" and ")),
             has_supply_pin: Fact::flag(supply.is_some()),
             supply_net: Fact::text(supply.map_or(String::new(), |pin| board.circuit.net_name(pin.net))),
             supply_open: supply.map_or(Fact::flag(false), |pin| supply_open(site, pin)),
@@ -126,59 +115,62 @@ pub(crate) fn pins_confirmed(site: &Site<'_>) -> bool {
     })
 }
 
-fn names(board: &Board<'_>, pins: &[&ArrayPin]) -> String {
-    let mut names: Vec<String> = pins.iter().map(|pin| board.circuit.net_name(pin.net)).collect();
-    names.dedup();
-    names.join(" and ")
+/// What the pin order comes to on this board.
+fn doubt(site: &Site<'_>) -> String {
+    let (board, array) = (site.board, site.array);
+    let side = |wanted: fn(Role) -> bool| -> String {
+        let nets: Vec<String> = array
+            .pins_of(wanted)
+            .filter(|pin| board.rails.is_signal(pin.net) && !board.is_lone(pin.net))
+            .take(3)
+            .map(|pin| board.circuit.net_name(pin.net))
+            .collect();
+        nets.join(", ")
+    };
+    let (inputs, outputs) = (side(|role| matches!(role, Role::Input(_))), side(|role| matches!(role, Role::Output(_))));
+    match array.sanity {
+        Sanity::Explained(WrongMap::StraightOrder) => {
+            return format!(
+                "net names of the same number meet only that way (inputs {inputs}, …, outputs {outputs}, …)"
+            );
+        }
+        Sanity::Explained(WrongMap::Mirrored) => {
+            return format!("loads hang on its inputs ({inputs}), and what drives is at its outputs ({outputs})");
+        }
+        Sanity::Explained(WrongMap::Shifted) => return shifted_words(site),
+        _ => {}
+    }
+    let at = |what: &str, pin: &ArrayPin| {
+        format!("its {what} {} is on {}", board.pin_words(pin.pin), board.circuit.net_name(pin.net))
+    };
+    let emitter = array.emitters().next().map(|pin| at("emitter", pin));
+    let clamp = array.clamps().next().map(|pin| at("clamp", pin));
+    let none = if array.sanity == Sanity::Undecided { ", which is no return that the netlist shows" } else { "" };
+    match (emitter, clamp) {
+        (Some(emitter), Some(clamp)) if none.is_empty() => format!("{emitter}, and {clamp}"),
+        (Some(emitter), _) => format!("{emitter}{none}"),
+        (None, _) => "it shows no emitter pin".to_owned(),
+    }
 }
 
-fn emitter_open(site: &Site<'_>, emitters: &[&ArrayPin]) -> Fact {
-    if let Some(gap) = emitters.iter().find_map(|pin| ask::unread(site.board, pin.net)) {
-        return Fact::default().gap(gap);
-    }
-    let open = !emitters.is_empty() && emitters.iter().all(|pin| is_open(site.board, pin.net));
-    Fact::flag(open).at(site.array.span, "emitter pin")
+/// Where return and supply stand in place of emitter and clamp pin.
+fn shifted_words(site: &Site<'_>) -> String {
+    let board = site.board;
+    let Some(emitter) = site.array.emitters().next() else { return String::new() };
+    let on = |index: u16| {
+        let pin = crate::connect::graph::Pin { index, ..emitter.pin };
+        format!("{} is on {}", board.pin_words(pin), board.circuit.net_name(board.net_at(pin)))
+    };
+    let at = emitter.pin.index;
+    // One place early, the emitter's place holds the supply; one place late, the clamp pin's holds the return.
+    let early = board.rails.rail(emitter.net).is_some();
+    let (first, side) = if early { (at.saturating_sub(1), "before") } else { (at + 1, "behind") };
+    format!("return and supply stand one place {side} where they belong, {} and {}", on(first), on(first + 1))
 }
 
 /// Nothing on the net, and the net's name makes it neither rail nor return.
-fn is_open(board: &Board<'_>, net: Id<Net>) -> bool {
+pub(crate) fn is_open(board: &Board<'_>, net: Id<Net>) -> bool {
     board.is_lone(net) && board.rails.is_signal(net)
-}
-
-/// Joined to a supply by copper or next to nothing. Whatever else lies below it, a sense resistor, a net tie, a
-/// transistor or a negative rail, does not prove it above the return.
-fn emitter_above(site: &Site<'_>, emitters: &[&ArrayPin]) -> Fact {
-    let board = site.board;
-    for pin in emitters {
-        let reach = board.connectivity.reach(
-            pin.net,
-            |link, _| link.kind.is_low_resistance(),
-            |net| if board.rails.is_signal(net) { At::On } else { At::End },
-        );
-        let on_return = reach.nets.iter().any(|&net| board.rails.is_return(net));
-        let rail = reach.nets.iter().find_map(|&net| board.rails.rail(net));
-        let positive = rail.filter(|rail| rail.level.is_none_or(|level| level.nominal.0 > 0.0));
-        if let (Some(rail), false) = (positive, on_return) {
-            return Fact::flag(true)
-                .at(site.array.span, "emitter pin")
-                .at(board.circuit.nets[rail.net].span, "a supply net");
-        }
-    }
-    Fact::flag(false)
-}
-
-/// Emitter or clamp pins that are open while another of the same kind is tied, by pin number.
-fn partial(site: &Site<'_>) -> Vec<String> {
-    let mut open = Vec::new();
-    let kinds: [fn(Role) -> bool; 2] = [|role| role == Role::Emitter, |role| matches!(role, Role::Clamp(_))];
-    for kind in kinds {
-        let pins: Vec<&ArrayPin> = site.array.pins_of(kind).collect();
-        let (lone, tied): (Vec<&ArrayPin>, Vec<&ArrayPin>) = pins.iter().partition(|pin| is_open(site.board, pin.net));
-        if !lone.is_empty() && !tied.is_empty() {
-            open.extend(lone.iter().map(|pin| format!("pin {}", pin.number)));
-        }
-    }
-    open
 }
 
 fn supply_open(site: &Site<'_>, pin: &ArrayPin) -> Fact {

@@ -7,8 +7,9 @@ use crate::recognise::site::{ChannelSite, Site};
 facts! {
     /// Unused channels.
     pub(crate) struct Spare in Array {
+        spare: Number(""), "How many channels have an input and no load.";
         spare_open: Number(""), "How many unused channels have an input that is left open.";
-        spare_names: Text, "Those channels.";
+        spare_names: Text, "The unused channels whose inputs are left open.";
         spare_open_off: Flag, "An input left open keeps its channel off on this type.";
         spare_wired: Flag, "One of those channels has an output that is wired to something.";
     }
@@ -17,16 +18,14 @@ facts! {
 impl Spare {
     /// The facts of one array. Spare is a channel without a load whose input nothing drives.
     pub(crate) fn of(site: &Site<'_>) -> Self {
-        let open: Vec<&ChannelSite<'_>> = site
-            .channels
-            .iter()
-            .filter(|channel| !channel.has_load() && !channel.channel.inputs.is_empty())
-            .filter(|channel| channel.drivers.iter().any(|drivers| !drivers.any()))
-            .collect();
+        let spare = || site.channels.iter().filter(|channel| !channel.has_load() && !channel.channel.inputs.is_empty());
+        let open: Vec<&ChannelSite<'_>> =
+            spare().filter(|channel| channel.drivers.iter().any(|drivers| !drivers.any())).collect();
         let elsewhere = site.inputs_lead_elsewhere() && site.channels.iter().any(ChannelSite::has_load);
         let open = if elsewhere { Vec::new() } else { open };
         let names: Vec<String> = open.iter().map(|channel| format!("ch{}", channel.channel.index)).collect();
         Self {
+            spare: Fact::number(spare().count() as f64),
             spare_open: Fact::number(open.len() as f64).at(site.array.span, "the array"),
             spare_names: Fact::text(names.join(", ")),
             spare_open_off: Fact::flag(site.array.profile.input.open == OpenInput::Off),

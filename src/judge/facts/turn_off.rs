@@ -58,7 +58,11 @@ impl TurnOff {
             inductive: inductive(site, load),
             turn_off_path: turn_off_path(site, channel, ways),
             turn_off_by: Fact::text(ways.list.first().map_or("nothing", |way| by_words(way.by))),
-            clamped: Fact::flag(ways.by_clamp().any(|way| !matches!(way.target, Target::Perhaps(_)))),
+            // A load between output and return has its supply through a pull-up: the clamp pin is not its business.
+            clamped: Fact::flag(
+                !matches!(load.supply, Supply::Return(_))
+                    && ways.by_clamp().any(|way| !matches!(way.target, Target::Perhaps(_))),
+            ),
             clamp_net: match site.array.clamp_of(channel.channel) {
                 Some(pin) => Fact::text(board.circuit.net_name(pin.net)).at(site.array.span, "the array"),
                 None => Fact::text(""),
@@ -66,7 +70,7 @@ impl TurnOff {
             clamp_drain: match ways.by_clamp().any(|way| way.target == Target::OtherEnd) {
                 // One rail cannot stand above itself, whatever its tolerance.
                 true => Fact::number(0.0),
-                false => drain(&supply_volts, &clamp_level, &ohms),
+                false => drained_at(site, load, drain(&supply_volts, &clamp_level, &ohms)),
             },
             levels_apart: levels_apart(site, ways, &clamp_level),
             own_diode: Fact::flag(ways.list.iter().any(|way| matches!(way.by, By::OwnDiode | By::Zener))),
@@ -172,6 +176,15 @@ fn plus(fact: Fact, volts: Option<Volts>) -> Fact {
             because: fact.because,
         },
         _ => fact,
+    }
+}
+
+/// The drain with the places that it rests on: the array, and the load's supply.
+fn drained_at(site: &Site<'_>, load: &Load, drain: Fact) -> Fact {
+    let fact = drain.at(site.array.span, "the clamp pin leads to the lower rail");
+    match load.elements.first() {
+        Some(&element) => fact.at(site.board.circuit.elements[element].span, "the load"),
+        None => fact,
     }
 }
 
