@@ -337,3 +337,6 @@ impl Reader<'_> {
         Box::new(notice)
     }
 }
+
+#[cfg(test)]
+mod tests;

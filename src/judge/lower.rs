@@ -6,8 +6,8 @@
 use std::cell::Cell;
 use std::ops::Range;
 
-use cel::common::ast::{CallExpr, ComprehensionExpr, Expr, IdedExpr, LiteralValue, operators};
-use cel::parser::{Parser, PrattParser};
+use cel::common::ast::{CallExpr, ComprehensionExpr, Expr, IdedExpr, LiteralValue, SourceInfo, operators};
+use cel::parser::{ParseErrors, Parser, PrattParser};
 
 use crate::notes::near::near;
 
@@ -46,6 +46,8 @@ pub(crate) struct Terms<'a> {
 /// A part of a predicate that is refused: the node, what is wrong, a way out.
 struct Fault {
     node: u64,
+    /// For `scope.fact`: the node of the scope, and the bytes of the fact's name.
+    selects: Option<(u64, usize)>,
     message: String,
     hint: Option<String>,
 }
@@ -67,13 +69,13 @@ pub(crate) fn lower(text: &str, terms: &Terms<'_>) -> Result<Test, Refused> {
         let message = format!("a predicate takes at most {LONGEST} bytes");
         return Err(Refused { message, hint: None, place: None });
     }
-    let tree = PrattParser::new().parse(text).map_err(|_| syntax(text))?;
+    let tree = PrattParser::new().parse(text).map_err(|errors| syntax(text, &errors))?;
     let lowered = Lowering::of(terms).test(&tree);
     lowered.map_err(|fault| {
         // The same tree with offsets: both parsers number nodes in their own way, so the check runs again on this one.
         let Ok((tree, info)) = Parser::default().parse_with_source_info(text) else { return placed(fault, None) };
         let fault = Lowering::of(terms).test(&tree).err().unwrap_or(fault);
-        let place = info.offset_for(fault.node).map(|(start, stop)| bytes(text, start, stop));
+        let place = placed_in(text, &fault, &info);
         placed(fault, place)
     })
 }
@@ -82,15 +84,15 @@ fn placed(fault: Fault, place: Option<Range<usize>>) -> Refused {
     Refused { message: fault.message, hint: fault.hint, place }
 }
 
-fn syntax(text: &str) -> Refused {
-    let errors = Parser::default().parse_with_source_info(text).err();
-    let first = errors.as_ref().and_then(|errors| errors.errors.first());
+/// What the parser says of a text that is no expression; its lines and columns count from 1.
+fn syntax(text: &str, errors: &ParseErrors) -> Refused {
+    let first = errors.errors.first();
     let place = first.and_then(|error| {
-        let (line, column) = error.pos;
-        let line_start: usize = text.split_inclusive('\n').take(usize::try_from(line - 1).ok()?).map(str::len).sum();
-        let start = (line_start + usize::try_from(column).ok()?).min(text.len());
-        let start = (0..=start).rev().find(|&at| text.is_char_boundary(at))?;
-        Some(start..start)
+        let (line, column) = (usize::try_from(error.pos.0).ok()?, usize::try_from(error.pos.1).ok()?);
+        let line_start: usize = text.split_inclusive('\n').take(line.checked_sub(1)?).map(str::len).sum();
+        let at = (line_start + column.checked_sub(1)?).min(text.len());
+        let at = (0..=at).rev().find(|&at| text.is_char_boundary(at))?;
+        Some(at..text[at..].chars().next().map_or(at, |c| at + c.len_utf8()))
     });
     Refused {
         message: "this is no expression of the Common Expression Language".to_owned(),
@@ -99,10 +101,29 @@ fn syntax(text: &str) -> Refused {
     }
 }
 
-/// The crate counts characters; a span counts bytes.
+/// Where a fault stands. The crate keeps of a selection its dot: the name around it is told whole.
+fn placed_in(text: &str, fault: &Fault, info: &SourceInfo) -> Option<Range<usize>> {
+    let (start, stop) = info.offset_for(fault.node)?;
+    let at = bytes(text, start, stop);
+    let Some((root, field)) = &fault.selects else {
+        // Of a call it keeps the parenthesis: its name stands before.
+        if !text.get(at.clone())?.starts_with('(') {
+            return Some(at);
+        }
+        let before = text.get(..at.start)?;
+        let name = before.trim_end_matches(|c: char| c.is_ascii_alphanumeric() || c == '_').len();
+        return Some(if name < at.start { name..at.start } else { at });
+    };
+    let (root_start, root_stop) = info.offset_for(*root)?;
+    let blanks = text.get(at.end..)?.len() - text.get(at.end..)?.trim_start().len();
+    Some(bytes(text, root_start, root_stop).start..(at.end + blanks + field).min(text.len()))
+}
+
+/// A stretch as the crate counts it: both ends belong to it.
 fn bytes(text: &str, start: u32, stop: u32) -> Range<usize> {
-    let at = |chars: usize| text.char_indices().nth(chars).map_or(text.len(), |(at, _)| at);
-    at(start as usize)..at(stop as usize + 1)
+    let boundary = |at: u32| (0..=at as usize).rev().find(|&at| text.is_char_boundary(at)).unwrap_or(0);
+    let (start, last) = (boundary(start), boundary(stop));
+    start..last + text.get(last..).and_then(|rest| rest.chars().next()).map_or(0, char::len_utf8)
 }
 
 struct Lowering<'a> {
@@ -302,10 +323,17 @@ fn literal_of(node: &IdedExpr, literal: &LiteralValue) -> Result<Typed, Fault> {
 }
 
 fn fault(node: &IdedExpr, message: impl Into<String>, hint: Option<String>) -> Fault {
-    Fault { node: node.id, message: message.into(), hint }
+    let selects = match &node.expr {
+        Expr::Select(select) if !select.test => Some((select.operand.id, select.field.len())),
+        _ => None,
+    };
+    Fault { node: node.id, selects, message: message.into(), hint }
 }
 
 fn unsupported(node: &IdedExpr, what: &str) -> Fault {
     let hint = "a predicate takes && || !, comparison, arithmetic, literals, `in` a list of literals, exists and all";
     fault(node, format!("{what} is not part of a predicate"), Some(hint.to_owned()))
 }
+
+#[cfg(test)]
+mod tests;

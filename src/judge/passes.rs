@@ -85,3 +85,6 @@ fn rounded(value: f64, towards: fn(f64) -> f64) -> f64 {
     let whole = if (steps - steps.round()).abs() < 1e-6 { steps.round() } else { towards(steps) };
     whole * step
 }
+
+#[cfg(test)]
+mod tests;

@@ -343,3 +343,6 @@ fn fold(view: &View<'_>, slot: Slot, test: &Test, decides: bool) -> Option<bool>
     }
     known.then_some(!decides)
 }
+
+#[cfg(test)]
+mod tests;

@@ -104,3 +104,62 @@ impl Shelf {
         self.cards.iter().find(|card| card.name == name)
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::super::card::read_whole;
+    use super::super::names::CARD_NAMES;
+    use super::super::sample;
+    use super::*;
+
+    fn card(name: &str, title: &str) -> String {
+        format!(
+            "name = \"{name}\"\nclass = \"margin\"\nscope = \"load\"\ntitle = \"{title}\"\napplies = \"true\"\n\
+             holds = \"load.clamped\"\nmessage = \"m\"\nwhy = \"w\"\nremedy = \"r\"\nsources = [\"common practice\"]\n"
+        )
+    }
+
+    fn file(stem: &str, text: String) -> CardFile {
+        CardFile { name: format!("house/cards/{stem}.toml"), stem: stem.to_owned(), text }
+    }
+
+    #[test]
+    fn every_bundled_card_is_taken_whole_and_bears_an_agreed_name() {
+        let (shelf, refused) = Shelf::bundled();
+        assert_eq!(refused, []);
+        for card in &shelf.cards {
+            assert!(CARD_NAMES.contains(&card.name.as_str()), "{}", card.name);
+            let whole = read_whole(FileId(0), &card.name, &card.text, &shelf.vocabulary);
+            assert!(whole.is_ok(), "{}: {:?}", card.name, whole.err());
+        }
+        assert!(CARD_NAMES.is_sorted());
+    }
+
+    #[test]
+    fn a_refused_card_is_told_with_its_place_and_the_others_serve() {
+        let (good, bad) = (card("good", "Good"), card("bad", "Bad").replace("load.clamped", "load.clampd"));
+        let (shelf, refused) = Shelf::of_texts(sample::vocabulary(), &[("bad", &bad), ("good", &good)]);
+        assert_eq!(shelf.cards.iter().map(|card| card.name.as_str()).collect::<Vec<_>>(), ["good"]);
+        assert!(refused[0].message.starts_with("rules/cards/bad.toml:6:10: "), "{}", refused[0].message);
+        assert_eq!(refused[0].place, None);
+    }
+
+    #[test]
+    fn house_cards_join_the_shelf_and_replace_by_name() {
+        let (own, other) = (card("own", "Bundled"), card("other", "Other"));
+        let (shelf, _) = Shelf::of_texts(sample::vocabulary(), &[("other", &other), ("own", &own)]);
+        let mut sources = Sources::default();
+        let files = vec![
+            file("own", card("own", "House")),
+            file("new", card("new", "New")),
+            file("other", card("other", "Broken").replace("load.clamped", "load.clampd")),
+        ];
+        let (shelf, notices) = shelf.with_house(files, &mut sources);
+        let titles: Vec<&str> = shelf.of(Scope::Load).map(|(_, card)| card.title.as_str()).collect();
+        assert_eq!(titles, ["New", "Other", "House"]);
+        assert_eq!(shelf.card("own").map(|card| card.title.as_str()), Some("House"));
+        let said: Vec<(Severity, Option<&str>)> =
+            notices.iter().map(|notice| (notice.severity, notice.place.map(|span| sources.slice(span)))).collect();
+        assert_eq!(said, [(Severity::Note, None), (Severity::Error, Some("load.clampd"))]);
+    }
+}

@@ -119,3 +119,6 @@ pub(crate) fn fingerprint(parts: &[&str]) -> String {
     }
     hash.finalize().iter().take(8).map(|byte| format!("{byte:02x}")).collect()
 }
+
+#[cfg(test)]
+mod tests;
