@@ -10,7 +10,6 @@ use crate::connect::link::{Link, LinkKind};
 use crate::connect::paths::At;
 use crate::connect::rail_name::ReturnKind;
 use crate::connect::rails::Role;
-use crate::connect::segments::Segments;
 
 use super::board::{Board, PinUse};
 use super::driver::{DriverKind, Drivers};
@@ -190,44 +189,38 @@ const SENSE_OHMS: f64 = 100.0;
 /// which nothing is known could do so inside: a module that senses or switches the current.
 pub(crate) fn could_join_outside(board: &Board<'_>, a: Id<Net>, b: Id<Net>) -> bool {
     let network = |start: Id<Net>| board.connectivity.segments(start, |_, link| is_return_link(board, link));
-    let leads_out = |reach: &Segments| {
+    let leads_out = |start: Id<Net>| {
+        let reach = network(start);
         reach.cut
             || reach.nets.iter().any(|&net| {
                 board.circuit.nets[net].port
                     || board.connectivity.pins(net).iter().any(|pin| board.is_connector(pin.element))
             })
     };
-    let (of_a, of_b) = (network(a), network(b));
-    if leads_out(&of_a) && leads_out(&of_b) {
-        return true;
-    }
     // A net that no name makes a return may be one only behind such a part; two named returns are kept apart on purpose.
-    let inside = |start: Id<Net>, to: &Segments| {
-        let other: FxHashSet<Id<Net>> = to.nets.iter().copied().collect();
-        let on_both = |pin: Pin| board.circuit.pins(pin.element).iter().any(|net| other.contains(net));
-        board.rails.is_signal(start)
-            && board
-                .connectivity
-                .reach(
-                    start,
-                    |link, _| carries_return(link.kind),
-                    |net| if board.rails.is_signal(net) { At::On } else { At::End },
-                )
-                .nets
-                .iter()
-                .flat_map(|&net| board.foreign_pins(net))
-                .any(|pin| board.pin_use(pin) == PinUse::Unknown && on_both(pin))
+    let inside = |start: Id<Net>, other: Id<Net>| {
+        let parts = unknown_parts(board, start);
+        if parts.is_empty() {
+            return false;
+        }
+        let other: FxHashSet<Id<Net>> = network(other).nets.into_iter().collect();
+        parts.iter().any(|&part| board.circuit.pins(part).iter().any(|net| other.contains(net)))
     };
-    inside(a, &of_b) || inside(b, &of_a)
+    (leads_out(a) && leads_out(b)) || inside(a, b) || inside(b, a)
 }
 
-/// A part of unknown insides with pins on the copper of both nets: it may join them.
-pub(crate) fn joining_part(board: &Board<'_>, a: Id<Net>, b: Id<Net>) -> Option<Id<Element>> {
-    let copper = board.connectivity.joined(a);
-    let mut parts = copper.into_iter().flat_map(|net| board.foreign_pins(net)).map(|pin| pin.element);
-    parts.find(|&part| {
-        !board.is_connector(part) && board.circuit.pins(part).iter().any(|&net| board.connectivity.same(net, b))
-    })
+/// The parts of which nothing is known at a signal net, or behind what carries a return's current.
+fn unknown_parts(board: &Board<'_>, start: Id<Net>) -> Vec<Id<Element>> {
+    if !board.rails.is_signal(start) {
+        return Vec::new();
+    }
+    let reach = board.connectivity.reach(
+        start,
+        |link, _| carries_return(link.kind),
+        |net| if board.rails.is_signal(net) { At::On } else { At::End },
+    );
+    let pins = reach.nets.iter().flat_map(|&net| board.foreign_pins(net));
+    pins.filter(|&pin| board.pin_use(pin) == PinUse::Unknown).map(|pin| pin.element).collect()
 }
 
 /// The nets that the drivers of an input take as their reference: return pins of driving parts, minus pins of sources.

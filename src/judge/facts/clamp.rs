@@ -41,9 +41,10 @@ impl Clamp {
         let loads = || site.channels.iter().flat_map(|channel| &channel.hanging.loads);
         // At the coils' own supply nothing lies between, whatever comes before both.
         let at_supply = site.channels.iter().all(|channel| {
-            channel.loads().filter(|(load, _)| load.kind.is_inductive() == Some(true)).all(|(_, ways)| {
-                ways.by_clamp().any(|way| way.target == Target::OtherEnd && way.path.hops.is_empty())
-            })
+            channel
+                .loads()
+                .filter(|(load, _)| load.kind.is_inductive() == Some(true))
+                .all(|(_, ways)| ways.by_clamp().any(|way| way.target == Target::OtherEnd && way.path.hops.is_empty()))
         });
         let series = if at_supply { None } else { clamps.iter().find_map(|pin| Series::of(site, pin.net)) };
         let current: Option<f64> =
