@@ -15,6 +15,7 @@ use super::fact::Scope;
 use super::finding::{Class, Verdict};
 use super::lower::{Refused, Terms, lower};
 use super::names::CARD_NAMES;
+use super::origin::origin;
 use super::predicate::Test;
 use super::template::Template;
 use super::vocabulary::{Slot, Vocabulary};
@@ -99,10 +100,11 @@ struct Written {
     #[serde(default)]
     also_show: Vec<Spanned<String>>,
     #[serde(default)]
-    limits: BTreeMap<String, f64>,
+    limits: BTreeMap<String, Spanned<f64>>,
 }
 
 #[derive(Deserialize)]
+#[serde(deny_unknown_fields)]
 struct Examples {
     #[serde(default, rename = "example")]
     examples: Vec<Example>,
@@ -113,51 +115,95 @@ pub(crate) fn class_of(name: &str) -> Option<Class> {
     Class::ALL.into_iter().find(|class| class.name() == name)
 }
 
+const VERDICTS: [Verdict; 4] = [Verdict::Holds, Verdict::Broken, Verdict::Unproven, Verdict::NotApplicable];
+
 /// The verdict of this name.
 pub(crate) fn verdict_of(name: &str) -> Option<Verdict> {
-    [Verdict::Holds, Verdict::Broken, Verdict::Unproven, Verdict::NotApplicable]
-        .into_iter()
-        .find(|verdict| verdict.name() == name)
+    VERDICTS.into_iter().find(|verdict| verdict.name() == name)
 }
 
-/// The part of a card's file before its examples.
-fn head(text: &str) -> &str {
-    text.find("\n[[example]]").map_or(text, |at| &text[..=at])
+/// Where the examples of a card's file start; its end where there are none.
+fn examples_at(text: &str) -> usize {
+    if text.starts_with(EXAMPLE) { 0 } else { text.find(&format!("\n{EXAMPLE}")).map_or(text.len(), |at| at + 1) }
 }
 
-/// Reads the examples of a card's file.
+/// The line that opens an example. Written otherwise (`[[ example ]]`) it is an unknown key.
+const EXAMPLE: &str = "[[example]]";
+
+/// Reads the examples of a card's file. They stand last: a key of the card behind them is refused.
 ///
 /// # Errors
-/// What the TOML reader says.
+/// What the TOML reader says; its places are those of the whole file.
 pub(crate) fn examples(text: &str) -> Result<Vec<Example>, toml::de::Error> {
-    let at = text.find("\n[[example]]").map_or(text.len(), |at| at + 1);
-    Ok(toml::from_str::<Examples>(&text[at..])?.examples)
+    let at = examples_at(text);
+    let (head, tail) = text.split_at(at);
+    // Blanks in place of the card keep lines and offsets as they are in the file.
+    let mut blanked: String = head.bytes().map(|byte| if byte == b'\n' { '\n' } else { ' ' }).collect();
+    blanked.push_str(tail);
+    Ok(toml::from_str::<Examples>(&blanked)?.examples)
 }
 
-/// Reads the card in `file`, whose stem is `stem`.
+/// Reads the examples of the card in `file`, as [`examples`] does, for a file that a user wrote.
+///
+/// # Errors
+/// The first thing that is wrong with them, with its place.
+pub(crate) fn examples_in(file: FileId, text: &str) -> Result<Vec<Example>, Box<Notice>> {
+    let list = examples(text).map_err(|error| unreadable(file, "the examples cannot be read", &error))?;
+    match list.iter().find(|example| verdict_of(&example.verdict).is_none()) {
+        None => Ok(list),
+        Some(example) => {
+            let quoted = format!("\"{}\"", example.verdict);
+            let start = text.get(examples_at(text)..).and_then(|tail| tail.find(&quoted)).unwrap_or(0);
+            let start = examples_at(text) + start;
+            let span = Span::new(file, start, start + quoted.len());
+            let mut notice = Notice::at(Severity::Error, span, format!("there is no verdict `{}`", example.verdict));
+            let names = VERDICTS.iter().map(|verdict| verdict.name());
+            notice.hint = near(&example.verdict, names).map(|near| format!("did you mean `{near}`?"));
+            Err(Box::new(notice))
+        }
+    }
+}
+
+fn unreadable(file: FileId, what: &str, error: &toml::de::Error) -> Box<Notice> {
+    let place = error.span().unwrap_or(0..0);
+    let span = Span::new(file, place.start, place.end);
+    Box::new(Notice::at(Severity::Error, span, format!("{what}: {}", error.message())))
+}
+
+/// Reads the card in `file`, whose stem is `stem`, as far as judging needs it.
 ///
 /// # Errors
 /// The first thing that is wrong with it, with its place.
 pub(crate) fn read(file: FileId, stem: &str, text: &str, vocabulary: &Vocabulary) -> Result<Card, Box<Notice>> {
-    let reader = Reader { file, vocabulary };
-    let written: Written = toml::from_str(head(text)).map_err(|error| {
-        let place = error.span().unwrap_or(0..0);
-        Box::new(Notice::at(
-            Severity::Error,
-            Span::new(file, place.start, place.end),
-            format!("the card cannot be read: {}", error.message()),
-        ))
-    })?;
-    reader.card(stem, text, written)
+    Reader { file, text, vocabulary, thorough: false }.read(stem)
+}
+
+/// Reads the card in `file` with all that judging leaves for later: its templates compile, its examples read.
+///
+/// # Errors
+/// The first thing that is wrong with it, with its place.
+pub(crate) fn read_whole(file: FileId, stem: &str, text: &str, vocabulary: &Vocabulary) -> Result<Card, Box<Notice>> {
+    let card = Reader { file, text, vocabulary, thorough: true }.read(stem)?;
+    examples_in(file, text)?;
+    Ok(card)
 }
 
 struct Reader<'a> {
     file: FileId,
+    /// Compile the templates too.
+    thorough: bool,
+    text: &'a str,
     vocabulary: &'a Vocabulary,
 }
 
 impl Reader<'_> {
-    fn card(&self, stem: &str, text: &str, written: Written) -> Result<Card, Box<Notice>> {
+    fn read(&self, stem: &str) -> Result<Card, Box<Notice>> {
+        let written: Written = toml::from_str(&self.text[..examples_at(self.text)])
+            .map_err(|error| unreadable(self.file, "the card cannot be read", &error))?;
+        self.card(stem, written)
+    }
+
+    fn card(&self, stem: &str, written: Written) -> Result<Card, Box<Notice>> {
         if written.name.get_ref() != stem {
             return Err(self.at(
                 &written.name,
@@ -165,12 +211,34 @@ impl Reader<'_> {
                 None,
             ));
         }
+        // The name goes into file names, rule ids and notes files.
+        let plain = |c: char| c.is_ascii_lowercase() || c.is_ascii_digit() || c == '-';
+        if stem.is_empty() || !stem.chars().all(plain) {
+            return Err(self.at(&written.name, "a card's name is made of small letters, digits and hyphens", None));
+        }
         let Some(scope) = Scope::ALL.into_iter().find(|scope| scope.name() == written.scope.get_ref()) else {
             let hint = near(written.scope.get_ref(), Scope::ALL.iter().map(|scope| scope.name()));
             return Err(self.at(&written.scope, "there is no such scope", hint));
         };
         let class = self.class(&written.class)?;
-        let limits: Vec<(String, f64)> = written.limits.into_iter().collect();
+        for (text, what) in [
+            (&written.title, "title"),
+            (&written.message, "message"),
+            (&written.why, "why"),
+            (&written.remedy, "remedy"),
+        ]
+        .into_iter()
+        .chain(written.caution.iter().map(|caution| (caution, "caution")))
+        {
+            if text.get_ref().trim().is_empty() {
+                return Err(self.at(text, format!("`{what}` says nothing"), None));
+            }
+        }
+        if let Some((name, value)) = written.limits.iter().find(|(_, value)| !value.get_ref().is_finite()) {
+            return Err(self.at(value, format!("the limit `{name}` is no number"), None));
+        }
+        let limits: Vec<(String, f64)> =
+            written.limits.into_iter().map(|(name, value)| (name, value.into_inner())).collect();
         let names: Vec<String> = limits.iter().map(|(name, _)| name.clone()).collect();
         let terms = Terms { vocabulary: self.vocabulary, scope, limits: &names };
         let mut class_when = Vec::new();
@@ -186,7 +254,7 @@ impl Reader<'_> {
                 None,
             ));
         }
-        if written.sources.get_ref().is_empty() {
+        if written.sources.get_ref().iter().all(|source| source.trim().is_empty()) {
             return Err(self.at(&written.sources, "a card needs a source", Some("common practice")));
         }
         for other in &written.overlaps {
@@ -215,7 +283,7 @@ impl Reader<'_> {
             overlaps: written.overlaps.into_iter().map(Spanned::into_inner).collect(),
             also_show,
             limits,
-            text: text.to_owned(),
+            text: self.text.to_owned(),
         })
     }
 
@@ -231,7 +299,8 @@ impl Reader<'_> {
     }
 
     fn template(&self, text: &Spanned<String>, terms: &Terms<'_>) -> Result<Template, Box<Notice>> {
-        Template::read(text.get_ref(), terms).map_err(|refused| self.within(text, refused))
+        let checked = if self.thorough { Template::check(text.get_ref(), terms) } else { Ok(()) };
+        checked.and_then(|()| Template::read(text.get_ref(), terms)).map_err(|refused| self.within(text, refused))
     }
 
     fn fact(&self, name: &Spanned<String>, terms: &Terms<'_>) -> Result<Slot, Box<Notice>> {
@@ -256,19 +325,18 @@ impl Reader<'_> {
         Box::new(notice)
     }
 
-    /// A place within a text of the card: behind its opening quote, if it is written on one line.
+    /// A place within a text of the card.
     fn within(&self, text: &Spanned<String>, refused: Refused) -> Box<Notice> {
         let whole = text.span();
-        let quotes = whole.len().saturating_sub(text.get_ref().len()) / 2;
-        let span = match refused.place {
-            Some(place) => {
-                let start = (whole.start + quotes + place.start).min(whole.end);
-                Span::new(self.file, start, (whole.start + quotes + place.end).clamp(start, whole.end))
-            }
-            None => Span::new(self.file, whole.start, whole.end),
-        };
+        let written = self.text.get(whole.clone()).unwrap_or_default();
+        let place = refused.place.unwrap_or(0..text.get_ref().len());
+        let at = |offset| whole.start + origin(written, offset);
+        let span = Span::new(self.file, at(place.start), at(place.end));
         let mut notice = Notice::at(Severity::Error, span, refused.message);
         notice.hint = refused.hint;
         Box::new(notice)
     }
 }
+
+#[cfg(test)]
+mod tests;

@@ -3,16 +3,23 @@
 //! Only a closed subset of CEL is taken: `&& || !`, comparison, arithmetic, literals, `in` a literal list, `exists`, `all`.
 //! Parsing takes the crate's fast parser; it drops offsets, so a refused predicate is parsed again for its caret.
 
+use std::cell::Cell;
 use std::ops::Range;
 
-use cel::common::ast::{CallExpr, ComprehensionExpr, Expr, IdedExpr, LiteralValue, operators};
-use cel::parser::{Parser, PrattParser};
+use cel::common::ast::{CallExpr, ComprehensionExpr, Expr, IdedExpr, LiteralValue, SourceInfo, operators};
+use cel::parser::{ParseErrors, Parser, PrattParser};
 
 use crate::notes::near::near;
 
 use super::fact::{Kind, Scope};
 use super::predicate::{Arithmetic, Number, Order, Test, Words};
 use super::vocabulary::{Slot, Vocabulary};
+
+/// Bytes of the longest predicate that is read. House cards may come from anywhere; those that people write are a tenth of it.
+const LONGEST: usize = 4096;
+
+/// How deep a predicate may nest, chains of `&&` included.
+const DEEPEST: usize = 100;
 
 /// Why a predicate is refused.
 #[derive(Clone, Debug, PartialEq, Eq)]
@@ -39,6 +46,8 @@ pub(crate) struct Terms<'a> {
 /// A part of a predicate that is refused: the node, what is wrong, a way out.
 struct Fault {
     node: u64,
+    /// For `scope.fact`: the node of the scope, and the bytes of the fact's name.
+    selects: Option<(u64, usize)>,
     message: String,
     hint: Option<String>,
 }
@@ -56,13 +65,17 @@ enum Typed {
 /// # Errors
 /// What is not CEL, not of the subset, or names what does not exist.
 pub(crate) fn lower(text: &str, terms: &Terms<'_>) -> Result<Test, Refused> {
-    let tree = PrattParser::new().parse(text).map_err(|_| syntax(text))?;
-    let lowered = Lowering { terms, item: None }.test(&tree);
+    if text.len() > LONGEST {
+        let message = format!("a predicate takes at most {LONGEST} bytes");
+        return Err(Refused { message, hint: None, place: None });
+    }
+    let tree = PrattParser::new().parse(text).map_err(|errors| syntax(text, &errors))?;
+    let lowered = Lowering::of(terms).test(&tree);
     lowered.map_err(|fault| {
         // The same tree with offsets: both parsers number nodes in their own way, so the check runs again on this one.
         let Ok((tree, info)) = Parser::default().parse_with_source_info(text) else { return placed(fault, None) };
-        let fault = Lowering { terms, item: None }.test(&tree).err().unwrap_or(fault);
-        let place = info.offset_for(fault.node).map(|(start, stop)| bytes(text, start, stop));
+        let fault = Lowering::of(terms).test(&tree).err().unwrap_or(fault);
+        let place = placed_in(text, &fault, &info);
         placed(fault, place)
     })
 }
@@ -71,15 +84,15 @@ fn placed(fault: Fault, place: Option<Range<usize>>) -> Refused {
     Refused { message: fault.message, hint: fault.hint, place }
 }
 
-fn syntax(text: &str) -> Refused {
-    let errors = Parser::default().parse_with_source_info(text).err();
-    let first = errors.as_ref().and_then(|errors| errors.errors.first());
+/// What the parser says of a text that is no expression; its lines and columns count from 1.
+fn syntax(text: &str, errors: &ParseErrors) -> Refused {
+    let first = errors.errors.first();
     let place = first.and_then(|error| {
-        let (line, column) = error.pos;
-        let line_start: usize = text.split_inclusive('\n').take(usize::try_from(line - 1).ok()?).map(str::len).sum();
-        let start = (line_start + usize::try_from(column).ok()?).min(text.len());
-        let start = (0..=start).rev().find(|&at| text.is_char_boundary(at))?;
-        Some(start..start)
+        let (line, column) = (usize::try_from(error.pos.0).ok()?, usize::try_from(error.pos.1).ok()?);
+        let line_start: usize = text.split_inclusive('\n').take(line.checked_sub(1)?).map(str::len).sum();
+        let at = (line_start + column.checked_sub(1)?).min(text.len());
+        let at = (0..=at).rev().find(|&at| text.is_char_boundary(at))?;
+        Some(at..text[at..].chars().next().map_or(at, |c| at + c.len_utf8()))
     });
     Refused {
         message: "this is no expression of the Common Expression Language".to_owned(),
@@ -88,19 +101,43 @@ fn syntax(text: &str) -> Refused {
     }
 }
 
-/// The crate counts characters; a span counts bytes.
+/// Where a fault stands. The crate keeps of a selection its dot: the name around it is told whole.
+fn placed_in(text: &str, fault: &Fault, info: &SourceInfo) -> Option<Range<usize>> {
+    let (start, stop) = info.offset_for(fault.node)?;
+    let at = bytes(text, start, stop);
+    let Some((root, field)) = &fault.selects else {
+        // Of a call it keeps the parenthesis: its name stands before.
+        if !text.get(at.clone())?.starts_with('(') {
+            return Some(at);
+        }
+        let before = text.get(..at.start)?;
+        let name = before.trim_end_matches(|c: char| c.is_ascii_alphanumeric() || c == '_').len();
+        return Some(if name < at.start { name..at.start } else { at });
+    };
+    let (root_start, root_stop) = info.offset_for(*root)?;
+    let blanks = text.get(at.end..)?.len() - text.get(at.end..)?.trim_start().len();
+    Some(bytes(text, root_start, root_stop).start..(at.end + blanks + field).min(text.len()))
+}
+
+/// A stretch as the crate counts it: both ends belong to it.
 fn bytes(text: &str, start: u32, stop: u32) -> Range<usize> {
-    let at = |chars: usize| text.char_indices().nth(chars).map_or(text.len(), |(at, _)| at);
-    at(start as usize)..at(stop as usize + 1)
+    let boundary = |at: u32| (0..=at as usize).rev().find(|&at| text.is_char_boundary(at)).unwrap_or(0);
+    let (start, last) = (boundary(start), boundary(stop));
+    start..last + text.get(last..).and_then(|rest| rest.chars().next()).map_or(0, char::len_utf8)
 }
 
 struct Lowering<'a> {
     terms: &'a Terms<'a>,
     /// The variable of the `exists` or `all` around.
     item: Option<&'a str>,
+    depth: Cell<usize>,
 }
 
-impl Lowering<'_> {
+impl<'a> Lowering<'a> {
+    fn of(terms: &'a Terms<'a>) -> Self {
+        Self { terms, item: None, depth: Cell::new(0) }
+    }
+
     fn test(&self, node: &IdedExpr) -> Result<Test, Fault> {
         match self.typed(node)? {
             Typed::Test(test) => Ok(test),
@@ -116,6 +153,17 @@ impl Lowering<'_> {
     }
 
     fn typed(&self, node: &IdedExpr) -> Result<Typed, Fault> {
+        let depth = self.depth.get();
+        if depth >= DEEPEST {
+            return Err(fault(node, format!("the predicate nests deeper than {DEEPEST}"), None));
+        }
+        self.depth.set(depth + 1);
+        let typed = self.typed_here(node);
+        self.depth.set(depth);
+        typed
+    }
+
+    fn typed_here(&self, node: &IdedExpr) -> Result<Typed, Fault> {
         match &node.expr {
             Expr::Literal(literal) => literal_of(node, literal),
             Expr::Ident(name) if Some(name.as_str()) == self.item => Ok(Typed::Words(Words::Item)),
@@ -188,6 +236,8 @@ impl Lowering<'_> {
             (operators::EQUALS, 2) => Ok(Typed::Test(self.equal(node, call)?)),
             (operators::NOT_EQUALS, 2) => Ok(Typed::Test(Test::Not(Box::new(self.equal(node, call)?)))),
             (operators::IN, 2) => self.among(node, call),
+            (operators::CONDITIONAL, _) => Err(unsupported(node, "`? :`")),
+            (operators::INDEX, _) => Err(unsupported(node, "`[ ]`")),
             (name, _) => Err(unsupported(node, &format!("`{}`", name.trim_matches(['_', '@'])))),
         }
     }
@@ -201,24 +251,38 @@ impl Lowering<'_> {
         }
     }
 
+    /// `in`: a text among texts, or a number equal to one of some numbers.
     fn among(&self, node: &IdedExpr, call: &CallExpr) -> Result<Typed, Fault> {
-        let Typed::Words(words) = self.typed(&call.args[0])? else {
-            return Err(fault(&call.args[0], "`in` takes a text on its left", None));
-        };
         let Expr::List(list) = &call.args[1].expr else {
             return Err(fault(&call.args[1], "`in` takes a list of literals on its right", None));
         };
-        let mut entries = Vec::new();
-        for element in &list.elements {
-            match self.typed(element)? {
-                Typed::Words(Words::Literal(text)) => entries.push(text),
-                _ => return Err(fault(element, "the list holds texts only", None)),
-            }
-        }
-        if entries.is_empty() {
+        if list.elements.is_empty() {
             return Err(fault(node, "nothing is in an empty list", None));
         }
-        Ok(Typed::Test(Test::Among(words, entries)))
+        match self.typed(&call.args[0])? {
+            Typed::Words(words) => {
+                let mut entries = Vec::new();
+                for element in &list.elements {
+                    let Typed::Words(Words::Literal(text)) = self.typed(element)? else {
+                        return Err(fault(element, "the list holds literal texts only", None));
+                    };
+                    entries.push(text);
+                }
+                Ok(Typed::Test(Test::Among(words, entries)))
+            }
+            Typed::Number(number) => {
+                let mut any = Test::Is(false);
+                for element in &list.elements {
+                    let Typed::Number(Number::Literal(value)) = self.typed(element)? else {
+                        return Err(fault(element, "the list holds literal numbers only", None));
+                    };
+                    let equal = Test::Compare(Order::Equal, number.clone(), Number::Literal(value));
+                    any = if any == Test::Is(false) { equal } else { Test::Or(Box::new(any), Box::new(equal)) };
+                }
+                Ok(Typed::Test(any))
+            }
+            _ => Err(fault(&call.args[0], "`in` takes a text or a number on its left", None)),
+        }
     }
 
     /// `exists` and `all` arrive as loops that start from false and from true.
@@ -236,7 +300,7 @@ impl Lowering<'_> {
             return Err(wrong());
         };
         let [_, condition] = &step.args[..] else { return Err(wrong()) };
-        let inner = Lowering { terms: self.terms, item: Some(&loop_.iter_var) };
+        let inner = Lowering { terms: self.terms, item: Some(&loop_.iter_var), depth: self.depth.clone() };
         match (*start.inner(), step.func_name.as_str()) {
             (false, operators::LOGICAL_OR) => Ok(Typed::Test(Test::Exists(list, Box::new(inner.test(condition)?)))),
             (true, operators::LOGICAL_AND) => Ok(Typed::Test(Test::All(list, Box::new(inner.test(condition)?)))),
@@ -259,10 +323,17 @@ fn literal_of(node: &IdedExpr, literal: &LiteralValue) -> Result<Typed, Fault> {
 }
 
 fn fault(node: &IdedExpr, message: impl Into<String>, hint: Option<String>) -> Fault {
-    Fault { node: node.id, message: message.into(), hint }
+    let selects = match &node.expr {
+        Expr::Select(select) if !select.test => Some((select.operand.id, select.field.len())),
+        _ => None,
+    };
+    Fault { node: node.id, selects, message: message.into(), hint }
 }
 
 fn unsupported(node: &IdedExpr, what: &str) -> Fault {
     let hint = "a predicate takes && || !, comparison, arithmetic, literals, `in` a list of literals, exists and all";
     fault(node, format!("{what} is not part of a predicate"), Some(hint.to_owned()))
 }
+
+#[cfg(test)]
+mod tests;

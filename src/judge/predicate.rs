@@ -88,34 +88,47 @@ pub(crate) struct View<'a> {
     pub limits: &'a [f64],
     /// Take this fact's number at one end of its range.
     pub pinned: Option<(Slot, End)>,
+    /// Take every other number as expected, without its range.
+    pub steady: bool,
+    /// Take facts that are from memory as not known.
+    pub distrust: bool,
 }
 
 /// An end of a range.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub(crate) enum End {
     Low,
-    Nominal,
     High,
 }
 
 impl<'a> View<'a> {
+    /// The facts in reach and the card's limits as they are.
+    pub(crate) fn new(reach: &'a Reach<'a>, limits: &'a [f64]) -> Self {
+        Self { reach, limits, pinned: None, steady: false, distrust: false }
+    }
+
     /// The fact in a slot.
     pub(crate) fn fact(&self, slot: Slot) -> Option<&'a Fact> {
         self.reach[slot.scope as usize].get(usize::from(slot.row))
     }
 
-    fn number(&self, slot: Slot) -> Option<Interval> {
-        match &self.fact(slot)?.value {
-            FactValue::Number(range) => Some(match self.pinned {
-                Some((pinned, end)) if pinned == slot => Interval::exactly(match end {
-                    End::Low => range.low,
-                    End::Nominal => range.nominal,
-                    End::High => range.high,
-                }),
-                _ => *range,
-            }),
-            _ => None,
+    /// The value of the fact in a slot; none where it is a gap or not to be trusted.
+    fn value(&self, slot: Slot) -> Option<&'a FactValue> {
+        let fact = self.fact(slot)?;
+        if self.distrust && fact.because.as_ref().is_some_and(|because| because.from_memory) {
+            return None;
         }
+        Some(&fact.value)
+    }
+
+    fn number(&self, slot: Slot) -> Option<Interval> {
+        let FactValue::Number(range) = self.value(slot)? else { return None };
+        Some(match self.pinned {
+            Some((pinned, End::Low)) if pinned == slot => Interval::exactly(range.low),
+            Some((pinned, End::High)) if pinned == slot => Interval::exactly(range.high),
+            _ if self.steady => Interval::exactly(range.nominal),
+            _ => *range,
+        })
     }
 }
 
@@ -128,8 +141,8 @@ impl Test {
     fn with_item(&self, view: &View<'_>, item: Option<&str>) -> Option<bool> {
         match self {
             Self::Is(value) => Some(*value),
-            Self::Flag(slot) => match view.fact(*slot)?.value {
-                FactValue::Flag(value) => Some(value),
+            Self::Flag(slot) => match view.value(*slot)? {
+                FactValue::Flag(value) => Some(*value),
                 _ => None,
             },
             Self::Not(test) => test.with_item(view, item).map(|value| !value),
@@ -207,14 +220,18 @@ impl Test {
             other => {
                 let mut named = Vec::new();
                 other.slots(&mut named);
-                // A fact that is known exactly never stands in the way.
-                for slot in named {
-                    let open = view.fact(slot).is_none_or(|fact| match &fact.value {
+                // A fact that is known exactly never stands in the way …
+                let open = |slot: &Slot| {
+                    view.value(*slot).is_none_or(|value| match value {
                         FactValue::Gap => true,
                         FactValue::Number(range) => range.low < range.high,
                         _ => false,
-                    });
-                    if open {
+                    })
+                };
+                // … except where the arithmetic itself fails, as in a division by nought: then all of it does.
+                let any_open = named.iter().any(open);
+                for slot in named {
+                    if !any_open || open(&slot) {
                         note(out, slot);
                     }
                 }
@@ -238,7 +255,8 @@ impl Number {
         }
     }
 
-    fn slots(&self, out: &mut Vec<Slot>) {
+    /// Every fact that the number is made of, each once.
+    pub(super) fn slots(&self, out: &mut Vec<Slot>) {
         match self {
             Self::Literal(_) | Self::Limit(_) => {}
             Self::Fact(slot) => note(out, *slot),
@@ -256,7 +274,7 @@ impl Words {
         match self {
             Self::Literal(text) => Some(text),
             Self::Item => item,
-            Self::Fact(slot) => match &view.fact(*slot)?.value {
+            Self::Fact(slot) => match view.value(*slot)? {
                 FactValue::Text(text) => Some(text),
                 _ => None,
             },
@@ -314,7 +332,7 @@ fn join(how: Arithmetic, a: Interval, b: Interval) -> Option<Interval> {
 
 /// `exists` (`decides` true) or `all` (false) over a list of texts.
 fn fold(view: &View<'_>, slot: Slot, test: &Test, decides: bool) -> Option<bool> {
-    let FactValue::Texts(list) = &view.fact(slot)?.value else { return None };
+    let FactValue::Texts(list) = view.value(slot)? else { return None };
     let mut known = true;
     for item in list {
         match test.with_item(view, Some(item)) {
@@ -325,3 +343,6 @@ fn fold(view: &View<'_>, slot: Slot, test: &Test, decides: bool) -> Option<bool>
     }
     known.then_some(!decides)
 }
+
+#[cfg(test)]
+mod tests;

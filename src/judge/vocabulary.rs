@@ -36,10 +36,9 @@ impl Vocabulary {
 
     /// The slot of `scope.field`.
     pub(crate) fn slot(&self, scope: Scope, field: &str) -> Option<Slot> {
-        // The map's keys live as long as the program; a shorter borrow finds them all the same.
-        let row = self.slots[scope as usize].iter().position(|def| def.field == field)?;
-        debug_assert!(self.by_name.contains_key(&(scope, self.slots[scope as usize][row].field)));
-        Some(Slot { scope, row: row as u16 })
+        // A map with keys that live as long as the program serves as one with keys that live as long as `field`.
+        let by_name: &BTreeMap<(Scope, &str), u16> = &self.by_name;
+        by_name.get(&(scope, field)).map(|&row| Slot { scope, row })
     }
 
     /// The entry of a slot.
@@ -66,5 +65,58 @@ impl Vocabulary {
     pub(crate) fn names_in_reach(&self, scope: Scope) -> Vec<String> {
         let facts = |&scope: &Scope| self.of(scope).iter().map(move |def| format!("{}.{}", scope.name(), def.field));
         scope.reach().iter().flat_map(facts).collect()
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::super::fact::Kind;
+    use super::super::facts::GROUPS;
+    use super::*;
+
+    /// Names that two facts of `groups` share, and names that CEL reserves.
+    fn refused(groups: &[&'static [FactDef]]) -> Vec<String> {
+        let mut seen = std::collections::BTreeSet::new();
+        let reserved = ["return", "package", "loop", "var", "in", "true", "false", "null"];
+        let defs = groups.iter().copied().flatten();
+        defs.filter(|def| !seen.insert((def.scope, def.field)) || reserved.contains(&def.field))
+            .map(|def| format!("{}.{}", def.scope.name(), def.field))
+            .collect()
+    }
+
+    const fn flag(field: &'static str) -> FactDef {
+        FactDef { scope: Scope::Load, field, kind: Kind::Flag, sentence: "Invented." }
+    }
+
+    #[test]
+    fn no_two_facts_bear_one_name_and_none_a_reserved_one() {
+        assert_eq!(refused(GROUPS), Vec::<String>::new());
+        const TWICE: &[FactDef] = &[flag("inductive"), flag("inductive"), flag("loop")];
+        assert_eq!(refused(&[TWICE]), ["load.inductive", "load.loop"]);
+    }
+
+    #[test]
+    fn every_fact_says_what_it_means_in_a_sentence() {
+        for def in GROUPS.iter().copied().flatten() {
+            assert!(
+                def.sentence.ends_with(['.', '…']) && def.sentence.contains(' '),
+                "{}: {}",
+                def.field,
+                def.sentence
+            );
+        }
+    }
+
+    #[test]
+    fn facts_are_found_by_scope_and_name_in_the_order_of_their_groups() {
+        const FIRST: &[FactDef] = &[flag("inductive"), flag("clamped")];
+        const SECOND: &[FactDef] = &[flag("safety")];
+        let vocabulary = Vocabulary::new(&[FIRST, SECOND]);
+        let slot = |scope, field| vocabulary.slot(scope, field).map(|slot| slot.row);
+        assert_eq!(slot(Scope::Load, "inductive"), Some(0));
+        assert_eq!(slot(Scope::Load, "safety"), Some(2));
+        assert_eq!(slot(Scope::Channel, "safety"), None);
+        assert_eq!(vocabulary.names_in_reach(Scope::Load), ["load.inductive", "load.clamped", "load.safety"]);
+        assert_eq!(vocabulary.names_in_reach(Scope::Parallel), Vec::<String>::new());
     }
 }

@@ -98,7 +98,7 @@ pub(crate) struct Hanging {
 }
 
 /// From this on a resistor that shares its net with a receiver or an input is a pull-up (common practice; card-neutral).
-const PULL_UP_OHMS: f64 = 1_000.0;
+pub(crate) const PULL_UP_OHMS: f64 = 1_000.0;
 
 impl LoadKind {
     /// The kind's name in a notes file and in every output.

@@ -112,3 +112,28 @@ fn every_board_stands_in_the_list() {
     }
     assert!(boards >= 12, "{boards} boards");
 }
+
+/// The text of each board's review, as a terminal of 80 columns shows it; a person has read these.
+#[test]
+fn the_text_of_every_board_is_as_it_was_read() {
+    let root = Path::new(env!("CARGO_MANIFEST_DIR")).join("fixtures");
+    let mut boards: Vec<_> = std::fs::read_dir(&root)
+        .expect("the folder is there")
+        .filter_map(|entry| std::fs::read_dir(entry.ok()?.path()).ok())
+        .flatten()
+        .filter_map(|entry| Some(entry.ok()?.path()))
+        .filter(|path| path.extension().is_some_and(|extension| extension == "cir"))
+        .collect();
+    boards.sort();
+    assert!(boards.len() >= 12, "only {} boards", boards.len());
+    for board in boards {
+        let name = board.strip_prefix(&root).expect("inside").to_string_lossy().into_owned();
+        let shown = std::process::Command::new(env!("CARGO_BIN_EXE_lowside"))
+            .args(["review", &format!("fixtures/{name}")])
+            .current_dir(env!("CARGO_MANIFEST_DIR"))
+            .output()
+            .expect("the program starts");
+        let text = String::from_utf8(shown.stdout).expect("it is UTF-8");
+        insta::assert_snapshot!(name.replace(['/', '.'], "_"), text);
+    }
+}

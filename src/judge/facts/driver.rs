@@ -13,10 +13,10 @@ use super::{ask, supply};
 facts! {
     /// What moves a net with inputs of arrays on it.
     pub(crate) struct Drive in Driver {
-        net: Text, "The net.";
+        net: Text, "The net that is driven.";
         inputs: Texts, "The channels whose inputs are on the net.";
         strong: Number(""), "How many parts on the net are known to pull both ways.";
-        strong_names: Texts, "Those parts' pins.";
+        strong_names: Texts, "The pins of the parts that are known to pull both ways.";
         strong_ohms: Number("ohm"), "Least resistance between two of them.";
         isolated: Flag, "What drives the net has no reference to compare: a switch, an optocoupler, a connector alone.";
         reference: Text, "The net that the driver takes as its reference.";

@@ -25,7 +25,7 @@ facts! {
         emitter_net: Text, "The net or nets at the emitter pin.";
         emitter_open: Flag, "The emitter pin leads nowhere: its net reaches neither return nor rail nor another part.";
         emitter_above: Flag, "The emitter pin is joined to a supply net, above the loads' return.";
-        emitter_rail: Text, "That supply net.";
+        emitter_rail: Text, "The supply net that the emitter pin is joined to.";
         emitter_at_fault: Flag, "The emitter pin is known to be open, or above the return.";
         pins_several: Flag, "The instance shows several emitter pins or several clamp pins.";
         ground_pins_open: Text, "Emitter or clamp pins that are open while others of the same kind are tied.";

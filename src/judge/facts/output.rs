@@ -19,12 +19,12 @@ facts! {
         switched: Flag, "Something that can turn the channel on drives its input, or the part is fed serially.";
         output_pin: Text, "The output's pin: by name where the netlist names it, by number otherwise.";
         output_on_rail: Flag, "The output is tied to a supply net with no load between.";
-        output_rail: Text, "That supply net.";
-        output_rail_volts: Number("V"), "Its voltage.";
+        output_rail: Text, "The supply net that the output is tied to.";
+        output_rail_volts: Number("V"), "Voltage of the supply net that the output is tied to.";
         output_on_return: Flag, "The output is tied to a return.";
-        output_return: Text, "That return.";
+        output_return: Text, "The return that the output is tied to.";
         output_driven: Flag, "A part that pulls both ways, or a source, drives the output's net.";
-        output_driver: Text, "That part's pin.";
+        output_driver: Text, "The pin or source that drives the output's net.";
         output_driver_ohms: Number("ohm"), "Resistance between that driver and the output.";
         safety: Flag, "The notes say that one of the channel's loads must never be on by mistake.";
     }

@@ -1,12 +1,14 @@
 //! Facts of a parallel group: channels whose outputs are joined.
 
+use crate::connect::link::LinkKind;
 use crate::judge::fact::{Fact, Interval, facts};
 use crate::parts::profile::Kind;
 use crate::recognise::board::Board;
+use crate::recognise::branch::End;
 use crate::recognise::driver::Drivers;
-use crate::recognise::load::{LoadKind, Supply};
+use crate::recognise::load::{LoadKind, PULL_UP_OHMS, Supply};
 use crate::recognise::parallel::{self, Group, Inputs};
-use crate::recognise::site::Site;
+use crate::recognise::site::{ChannelSite, Site};
 
 use super::turn_off::{assumptions_of, over};
 use super::volts::rail_volts;
@@ -46,7 +48,7 @@ impl Parallel {
             names: Fact::texts(group.members.iter().map(names).collect())
                 .at(board.circuit.nets[group.output].span, "joined here"),
             outputs: Fact::number(group.members.len() as f64),
-            wired_logic: Fact::flag(loads.is_empty()),
+            wired_logic: Fact::flag(is_wired_logic(site, channel)),
             inputs_joined: inputs_joined(board, group),
             input_nets: Fact::texts(input_nets(board, group)),
             packages: Fact::number(packages.len() as f64).at(site.array.span, "one of the packages"),
@@ -59,6 +61,23 @@ impl Parallel {
             safety: Fact::flag(channel.loads().any(|(load, _)| supply::is_safety(site, channel, load))),
         }
     }
+}
+
+/// Nothing but pull-ups hangs there: no load at all, or only resistors of pull-up size beside a part's pin that may watch
+/// the level.
+fn is_wired_logic(site: &Site<'_>, channel: &ChannelSite<'_>) -> bool {
+    let board = site.board;
+    let branches = &channel.hanging.branches.list;
+    let watched = branches.iter().any(|branch| {
+        matches!(branch.end, End::Part(_))
+            && branch
+                .links(board)
+                .all(|(link, _)| matches!(link.kind, LinkKind::Resistor(_)) || link.kind.is_low_resistance())
+    });
+    channel.loads().all(|(load, _)| {
+        let pull_up = load.kind == LoadKind::Resistor && load.ohms.is_some_and(|ohms| ohms.0 >= PULL_UP_OHMS);
+        load.kind == LoadKind::Nothing || (watched && pull_up)
+    })
 }
 
 fn inputs_joined(board: &Board<'_>, group: &Group) -> Fact {

@@ -30,7 +30,7 @@ facts! {
         has_loads: Flag, "The array drives a load.";
         signal_ground: Flag, "The emitter pin is on an analogue or signal ground, and the loads' supply on another return.";
         shared: Flag, "A part of the return carries the loads' current and joins a reference to the supply as well.";
-        shared_by: Text, "That part.";
+        shared_by: Text, "The part of the return that carries both.";
         shared_reference: Text, "The net of the reference that is lifted.";
         shared_part: Text, "The part that takes it as its reference.";
         shift: Number("V"), "How far the loads' current lifts that reference.";

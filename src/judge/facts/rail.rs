@@ -18,7 +18,7 @@ use super::volts::rail_volts;
 facts! {
     /// One rail.
     pub(crate) struct Supply in Rail {
-        name: Text, "The rail's net.";
+        name: Text, "The name of the rail's net.";
         volts: Number("V"), "Its voltage above its return.";
         origin: Text, "How its voltage is known: notes, source or name.";
         name_tells: Flag, "Its name says a voltage, and a source or the notes say one too.";
@@ -29,10 +29,10 @@ facts! {
         bypassed: Flag, "A capacitor stands between the rail and a return, on it or behind a ferrite or fuse.";
         partial: Flag, "The notes say that the netlist is one sheet of several.";
         joined: Flag, "Another rail of known voltage is joined to it by wire, a ferrite, a small resistor or a jumper.";
-        joined_to: Text, "That rail.";
+        joined_to: Text, "The rail that it is joined to.";
         joined_by: Text, "The part that joins them.";
         joined_closed: Flag, "What joins them conducts; a jumper may be open.";
-        joined_levels: Text, "The two voltages.";
+        joined_levels: Text, "The voltages of the two joined rails.";
         joined_apart: Number(""), "How far the two voltages are apart, as a share of the lower one.";
     }
 }

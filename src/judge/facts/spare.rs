@@ -9,7 +9,7 @@ facts! {
     pub(crate) struct Spare in Array {
         spare: Number(""), "How many channels have an input and no load.";
         spare_open: Number(""), "How many unused channels have an input that is left open.";
-        spare_names: Text, "Those channels.";
+        spare_names: Text, "The unused channels whose inputs are left open.";
         spare_open_off: Flag, "An input left open keeps its channel off on this type.";
         spare_wired: Flag, "One of those channels has an output that is wired to something.";
     }

@@ -31,7 +31,7 @@ facts! {
         led_shared_with: Text, "The other channels whose LEDs share it.";
         led_one_at_a_time: Flag, "The notes allow at most one of those channels on at a time.";
         led_reversed: Flag, "A LED points the wrong way: it blocks every path from supply to output.";
-        led_blocking: Text, "That LED.";
+        led_blocking: Text, "The LED that blocks every path.";
         cut_by: Text, "The switch, fuse or jumper between the coil and its supply.";
         cut_is_switch: Flag, "That part is a switch or contact: it opens in use.";
         cut_survives: Flag, "With that part open and the channel on, the coil's current still has a way.";

@@ -23,7 +23,7 @@ pub(crate) const SCHEMA: u32 = 1;
 /// Where `out` cannot be written.
 pub(crate) fn write(out: &mut dyn Write, reviews: impl Iterator<Item = Review>) -> io::Result<()> {
     let document = Document { boards: Cell::new(Some(reviews)) };
-    serde_json::to_writer_pretty(&mut *out, &document).map_err(io::Error::from)?;
+    serde_json::to_writer(&mut *out, &document).map_err(io::Error::from)?;
     out.write_all(b"\n")
 }
 
