@@ -1,13 +1,10 @@
 //! The return: how the current of an array's loads comes back from the emitter pin to the supply's negative terminal.
 
-use rustc_hash::FxHashSet;
-
 use crate::base::quantity::Ohms;
 use crate::base::table::Id;
 use crate::circuit::model::{Element, Net};
 use crate::connect::graph::Pin;
 use crate::connect::link::{Link, LinkKind};
-use crate::connect::paths::At;
 use crate::connect::rail_name::ReturnKind;
 use crate::connect::rails::Role;
 
@@ -185,42 +182,26 @@ pub(crate) fn carries_return(kind: LinkKind) -> bool {
 /// Up to this a resistor under an emitter pin is there to sense the current (common practice).
 const SENSE_OHMS: f64 = 100.0;
 
-/// Whether connectors with pins on the return networks of both nets could join them outside the board, or a part of
-/// which nothing is known could do so inside: a module that senses or switches the current.
+/// Whether a connector with pins on the return networks of both nets could join them outside the board.
 pub(crate) fn could_join_outside(board: &Board<'_>, a: Id<Net>, b: Id<Net>) -> bool {
-    let network = |start: Id<Net>| board.connectivity.segments(start, |_, link| is_return_link(board, link));
     let leads_out = |start: Id<Net>| {
-        let reach = network(start);
+        let reach = board.connectivity.segments(start, |_, link| is_return_link(board, link));
         reach.cut
             || reach.nets.iter().any(|&net| {
                 board.circuit.nets[net].port
                     || board.connectivity.pins(net).iter().any(|pin| board.is_connector(pin.element))
             })
     };
-    // A net that no name makes a return may be one only behind such a part; two named returns are kept apart on purpose.
-    let inside = |start: Id<Net>, other: Id<Net>| {
-        let parts = unknown_parts(board, start);
-        if parts.is_empty() {
-            return false;
-        }
-        let other: FxHashSet<Id<Net>> = network(other).nets.into_iter().collect();
-        parts.iter().any(|&part| board.circuit.pins(part).iter().any(|net| other.contains(net)))
-    };
-    (leads_out(a) && leads_out(b)) || inside(a, b) || inside(b, a)
+    leads_out(a) && leads_out(b)
 }
 
-/// The parts of which nothing is known at a signal net, or behind what carries a return's current.
-fn unknown_parts(board: &Board<'_>, start: Id<Net>) -> Vec<Id<Element>> {
-    if !board.rails.is_signal(start) {
-        return Vec::new();
-    }
-    let reach = board.connectivity.reach(
-        start,
-        |link, _| carries_return(link.kind),
-        |net| if board.rails.is_signal(net) { At::On } else { At::End },
-    );
-    let pins = reach.nets.iter().flat_map(|&net| board.foreign_pins(net));
-    pins.filter(|&pin| board.pin_use(pin) == PinUse::Unknown).map(|pin| pin.element).collect()
+/// A part of unknown insides with pins on the copper of both nets: it may join them.
+pub(crate) fn joining_part(board: &Board<'_>, a: Id<Net>, b: Id<Net>) -> Option<Id<Element>> {
+    let copper = board.connectivity.joined(a);
+    let mut parts = copper.into_iter().flat_map(|net| board.foreign_pins(net)).map(|pin| pin.element);
+    parts.find(|&part| {
+        !board.is_connector(part) && board.circuit.pins(part).iter().any(|&net| board.connectivity.same(net, b))
+    })
 }
 
 /// The nets that the drivers of an input take as their reference: return pins of driving parts, minus pins of sources.
