@@ -1,6 +1,6 @@
 //! The board as recognition sees it: circuit, connectivity, rails, natures of parts, arrays, and who sits on which net.
 
-use rustc_hash::FxHashMap;
+use rustc_hash::{FxHashMap, FxHashSet};
 use smallvec::SmallVec;
 use std::cmp::Ordering;
 use std::sync::RwLock;
@@ -42,6 +42,8 @@ pub(crate) struct Board<'a> {
     outputs: FxHashMap<Id<Net>, SmallVec<[(u32, u32); 1]>>,
     inputs: FxHashMap<Id<Net>, SmallVec<[(u32, u32); 1]>>,
     coupled: Vec<Id<Element>>,
+    /// Emitter pins of all arrays: element and position.
+    emitters: FxHashSet<(Id<Element>, u16)>,
     /// Nets at parts that are not fitted, sorted.
     empty_places: Vec<Id<Net>>,
     several_returns: bool,
@@ -91,6 +93,7 @@ impl<'a> Board<'a> {
         let mut returns: Vec<Id<Net>> =
             circuit.nets.ids().filter(|&net| rails.is_return(net) && !connectivity.pins(net).is_empty()).collect();
         returns.dedup_by(|a, b| connectivity.same(*a, *b));
+        let emitters = arrays.iter().flat_map(Array::emitters).map(|pin| (pin.pin.element, pin.pin.index)).collect();
         let left_out = |id: Id<Element>| !circuit.elements[id].fitted || noted.is_left_out(id);
         let mut empty_places: Vec<Id<Net>> =
             circuit.elements.ids().filter(|&id| left_out(id)).flat_map(|id| circuit.pins(id).iter().copied()).collect();
@@ -107,6 +110,7 @@ impl<'a> Board<'a> {
             outputs,
             inputs,
             coupled,
+            emitters,
             empty_places,
             several_returns,
             negatives: RwLock::default(),
@@ -181,6 +185,11 @@ impl<'a> Board<'a> {
     /// Whether the inductor shares flux with another.
     pub(crate) fn is_coupled(&self, element: Id<Element>) -> bool {
         self.coupled.binary_search(&element).is_ok()
+    }
+
+    /// Whether `pin` is an array's emitter pin.
+    pub(crate) fn is_emitter(&self, pin: Pin) -> bool {
+        self.emitters.contains(&(pin.element, pin.index))
     }
 
     /// Whether a part that is not fitted has a pin on the net.

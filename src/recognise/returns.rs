@@ -1,16 +1,12 @@
 //! The return: how the current of an array's loads comes back from the emitter pin to the supply's negative terminal.
 
-use rustc_hash::FxHashSet;
-
 use crate::base::quantity::Ohms;
 use crate::base::table::Id;
 use crate::circuit::model::{Element, Net};
 use crate::connect::graph::Pin;
 use crate::connect::link::{Link, LinkKind};
-use crate::connect::paths::At;
 use crate::connect::rail_name::ReturnKind;
 use crate::connect::rails::Role;
-use crate::connect::segments::Segments;
 
 use super::board::{Board, PinUse};
 use super::driver::{DriverKind, Drivers};
@@ -186,39 +182,17 @@ pub(crate) fn carries_return(kind: LinkKind) -> bool {
 /// Up to this a resistor under an emitter pin is there to sense the current (common practice).
 const SENSE_OHMS: f64 = 100.0;
 
-/// Whether connectors with pins on the return networks of both nets could join them outside the board, or a part of
-/// which nothing is known could do so inside: a module that senses or switches the current.
+/// Whether a connector with pins on the return networks of both nets could join them outside the board.
 pub(crate) fn could_join_outside(board: &Board<'_>, a: Id<Net>, b: Id<Net>) -> bool {
-    let network = |start: Id<Net>| board.connectivity.segments(start, |_, link| is_return_link(board, link));
-    let leads_out = |reach: &Segments| {
+    let leads_out = |start: Id<Net>| {
+        let reach = board.connectivity.segments(start, |_, link| is_return_link(board, link));
         reach.cut
             || reach.nets.iter().any(|&net| {
                 board.circuit.nets[net].port
                     || board.connectivity.pins(net).iter().any(|pin| board.is_connector(pin.element))
             })
     };
-    let (of_a, of_b) = (network(a), network(b));
-    if leads_out(&of_a) && leads_out(&of_b) {
-        return true;
-    }
-    // A net that no name makes a return may be one only behind such a part; two named returns are kept apart on purpose.
-    let inside = |start: Id<Net>, to: &Segments| {
-        let other: FxHashSet<Id<Net>> = to.nets.iter().copied().collect();
-        let on_both = |pin: Pin| board.circuit.pins(pin.element).iter().any(|net| other.contains(net));
-        board.rails.is_signal(start)
-            && board
-                .connectivity
-                .reach(
-                    start,
-                    |link, _| carries_return(link.kind),
-                    |net| if board.rails.is_signal(net) { At::On } else { At::End },
-                )
-                .nets
-                .iter()
-                .flat_map(|&net| board.foreign_pins(net))
-                .any(|pin| board.pin_use(pin) == PinUse::Unknown && on_both(pin))
-    };
-    inside(a, &of_b) || inside(b, &of_a)
+    leads_out(a) && leads_out(b)
 }
 
 /// A part of unknown insides with pins on the copper of both nets: it may join them.

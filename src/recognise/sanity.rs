@@ -129,12 +129,13 @@ impl Ground<'_, '_> {
         let late = looks(Some(at + 1)) == Some(Looks::Return)
             && looks(Some(at + 2)) == Some(Looks::Rail)
             && alone(nodes.first());
+        // The order of a smaller package on a larger one leaves no place empty in front.
         let first_driven =
-            nodes.first().is_some_and(|&net| self.driven(net)) && pins.iter().all(|pin| pin.pin.index > 0);
+            || pins.iter().all(|pin| pin.pin.index > 0) && nodes.first().is_some_and(|&net| self.driven(net));
         let early = emitter_looks == Looks::Rail
             && looks(at.checked_sub(1)) == Some(Looks::Return)
             && self.looks(clamp.net) == Looks::Other
-            && (first_driven || self.loaded(clamp.net));
+            && (self.loaded(clamp.net) || first_driven());
         late || early
     }
 
@@ -167,21 +168,33 @@ impl Ground<'_, '_> {
     }
 
     /// Something that does work lies between the net and a supply, a resistor in series at most, and would draw current
-    /// into the net.
+    /// into the net. Few links of each net are looked at: a pin of an array has no more.
     fn loaded(&self, net: Id<Net>) -> bool {
-        let link = |hop: &Hop| self.connectivity.link(hop.link).kind;
-        let resistive = |kind: LinkKind| matches!(kind, LinkKind::Resistor(_)) || kind.is_low_resistance();
-        let supplied = |net: Id<Net>| {
-            let reach = self.reach(net, |kind| resistive(kind) || kind.is_load());
-            reach.nets.iter().any(|&net| self.own(net) == Looks::Rail)
-        };
         let works = |net: Id<Net>| {
-            self.connectivity
-                .hops(net)
-                .any(|hop| link(&hop).is_load() && link(&hop).passes_dc(!hop.forward) && supplied(hop.to))
+            self.connectivity.hops(net).take(MAX_HOPS).any(|hop| {
+                let kind = self.connectivity.link(hop.link).kind;
+                kind.is_load() && kind.passes_dc(!hop.forward) && self.supplied(hop.to, MAX_STEPS)
+            })
         };
-        let behind = |hop: Hop| resistive(link(&hop)) && self.rails.is_signal(hop.to) && works(hop.to);
-        works(net) || self.connectivity.hops(net).any(behind)
+        let behind = |hop: Hop| {
+            is_resistive(self.connectivity.link(hop.link).kind) && self.rails.is_signal(hop.to) && works(hop.to)
+        };
+        works(net) || self.connectivity.hops(net).take(MAX_HOPS).any(behind)
+    }
+
+    /// Whether a rail is at the net, or behind a few resistors and loads.
+    fn supplied(&self, net: Id<Net>, steps: usize) -> bool {
+        match self.own(net) {
+            Looks::Rail => true,
+            Looks::Return => false,
+            Looks::Other => {
+                steps > 0
+                    && self.connectivity.hops(net).take(MAX_HOPS / 4).any(|hop| {
+                        let kind = self.connectivity.link(hop.link).kind;
+                        (is_resistive(kind) || kind.is_load()) && self.supplied(hop.to, steps - 1)
+                    })
+            }
+        }
     }
 
     /// Something that drives, or may drive, is on the net, or behind resistors, diodes and contacts.
@@ -209,6 +222,17 @@ impl Ground<'_, '_> {
         )
     }
 }
+
+/// A resistor, or less.
+fn is_resistive(kind: LinkKind) -> bool {
+    matches!(kind, LinkKind::Resistor(_)) || kind.is_low_resistance()
+}
+
+/// Links of one net that are looked at for loads.
+const MAX_HOPS: usize = 16;
+
+/// Links between a load and its rail that are followed: a LED string, a resistor, a fuse.
+const MAX_STEPS: usize = 4;
 
 /// Whether a person gave the net its name, not an exporter: `VALVE_3`, not `N001`, `N$12`, `Net-(U1-Pad3)`, `12`.
 pub(crate) fn is_given(name: &str) -> bool {

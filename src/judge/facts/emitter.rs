@@ -1,5 +1,7 @@
 //! Facts of an array: where its emitter pins lead, and whether all pins of one kind are tied.
 
+use std::cell::Cell;
+
 use crate::base::table::Id;
 use crate::circuit::model::Net;
 use crate::connect::link::{Link, LinkKind};
@@ -68,8 +70,17 @@ fn emitter_open(site: &Site<'_>, emitters: &[&ArrayPin]) -> Fact {
         return Fact::default().gap(gap);
     }
     let leads_nowhere = |pin: &&ArrayPin| {
-        let reach = direct(board, pin.net, |kind| !matches!(kind, LinkKind::Capacitor | LinkKind::Control));
-        !reach.cut && reach.nets.iter().all(|&net| board.rails.is_signal(net) && !leads_on(board, net))
+        // The first net that leads on ends the walk: emitter pins of many arrays may share a large network.
+        let found = Cell::new(false);
+        let reach = board.connectivity.reach(
+            pin.net,
+            |link, _| !found.get() && !matches!(link.kind, LinkKind::Capacitor | LinkKind::Control),
+            |net| {
+                found.set(found.get() || !board.rails.is_signal(net) || leads_on(board, net));
+                if found.get() { At::End } else { At::On }
+            },
+        );
+        !found.get() && !reach.cut
     };
     let open = !emitters.is_empty() && emitters.iter().all(leads_nowhere);
     Fact::flag(open).at(site.array.span, "emitter pin")
@@ -81,11 +92,11 @@ fn leads_on(board: &Board<'_>, net: Id<Net>) -> bool {
     row.port
         || row.global
         || board.foreign_pins(net).next().is_some()
-        || board.connectivity.pins(net).iter().any(|pin| {
-            let array = || board.arrays.iter().find(|array| array.elements.contains(&pin.element));
-            let emitter = || array().is_some_and(|array| array.emitters().any(|emitter| emitter.pin == *pin));
-            matches!(board.natures.of(pin.element), Nature::Array(_)) && !emitter()
-        })
+        || board
+            .connectivity
+            .pins(net)
+            .iter()
+            .any(|&pin| matches!(board.natures.of(pin.element), Nature::Array(_)) && !board.is_emitter(pin))
 }
 
 /// The nets that `net` reaches over links of the wanted kinds, no further than rails and returns.

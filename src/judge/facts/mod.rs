@@ -76,12 +76,15 @@ pub(crate) fn channel(site: &Site<'_>, channel: &ChannelSite<'_>) -> Vec<Fact> {
 pub(crate) fn load(site: &Site<'_>, channel: &ChannelSite<'_>, load: &Load, ways: &Ways) -> Vec<Fact> {
     let mut slots = Vec::with_capacity(turn_off::TurnOff::DEFS.len() + supply::Feed::DEFS.len());
     turn_off::TurnOff::of(site, channel, load, ways).into_slots(&mut slots);
-    // Cause before effect: what a load without a supply would do is not judged.
+    // Cause before effect: what a load without a supply would do is not judged, and what leaves its supply open leaves
+    // the rest open too.
+    let words = |slot: &&mut Fact| matches!(slot.value, FactValue::Text(_) | FactValue::Texts(_));
+    let fed = supply::fed(site, load);
     if supply::is_stranded(site, channel, load) {
         let reason = format!("{} gets no current as drawn", ask::load_name(site.board, load));
-        for slot in slots.iter_mut().filter(|slot| !matches!(slot.value, FactValue::Text(_) | FactValue::Texts(_))) {
-            *slot = Fact::reason(reason.clone(), None);
-        }
+        slots.iter_mut().filter(|slot| !words(slot)).for_each(|slot| *slot = Fact::reason(reason.clone(), None));
+    } else if matches!(fed.value, FactValue::Gap) {
+        slots.iter_mut().filter(|slot| matches!(slot.value, FactValue::Gap)).for_each(|slot| *slot = fed.clone());
     }
     supply::Feed::of(site, channel, load, ways).into_slots(&mut slots);
     slots

@@ -114,12 +114,13 @@ fn emitter_is_negative(site: &Site<'_>) -> bool {
     })
 }
 
-/// Whether no supply reaches the load, or it lies between output and return.
+/// Whether it is known that no supply reaches the load, or that it lies between output and return.
 pub(crate) fn is_stranded(site: &Site<'_>, channel: &ChannelSite<'_>, load: &Load) -> bool {
-    matches!(load.supply, Supply::None(_)) || to_return(site, channel, load).is(true)
+    fed(site, load).is(false) || to_return(site, channel, load).is(true)
 }
 
-fn fed(site: &Site<'_>, load: &Load) -> Fact {
+/// Whether the load's far end reaches a supply, or something that may be one.
+pub(crate) fn fed(site: &Site<'_>, load: &Load) -> Fact {
     let board = site.board;
     match load.supply {
         Supply::None(net) => match ask::unread(board, net) {
