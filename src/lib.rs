@@ -3,6 +3,8 @@
 mod base;
 mod circuit;
 mod connect;
+#[doc(hidden)]
+pub mod fuzzing;
 mod judge;
 mod netlist;
 mod notes;

@@ -2,6 +2,8 @@
 
 use crate::base::span::Span;
 
+use crate::recognise::shape::Roots;
+
 use super::fact::Scope;
 
 /// Consequence class, worst first.
@@ -75,6 +77,8 @@ pub(crate) struct Subject {
     pub channel: Option<u32>,
     /// Its place in canonical form, before hashing (design section 12): no net names, lines or values.
     pub place: String,
+    /// Parts and nets that its shape is told from.
+    pub roots: Roots,
 }
 
 /// One judgement worth telling.

@@ -19,6 +19,7 @@ pub(crate) mod parallel;
 pub(crate) mod pins;
 pub(crate) mod returns;
 pub(crate) mod sanity;
+pub(crate) mod shape;
 pub(crate) mod site;
 pub(crate) mod sourced;
 pub(crate) mod structure;

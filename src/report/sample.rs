@@ -85,6 +85,7 @@ pub(crate) fn finding(card: &str, class: Class, subject: &str, message: &str) ->
             refdes: vec!["U1".to_owned()],
             channel: Some(1),
             place: String::new(),
+            roots: Default::default(),
         },
         message: message.to_owned(),
         why: "The output breaks down at every turn-off.".to_owned(),

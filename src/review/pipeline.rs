@@ -32,6 +32,7 @@ use crate::recognise::nature::Natures;
 use crate::recognise::noted::{Directory, Noted};
 use crate::recognise::parallel::groups_of;
 use crate::recognise::sanity::Ground;
+use crate::recognise::shape::Shapes;
 use crate::recognise::site::Site;
 use crate::recognise::switched::switched_nodes;
 
@@ -226,6 +227,11 @@ fn judge_board(
     review.not_judged.extend(silence::of_board(&board));
     review.assumptions = assumptions(&board);
     review.judged = judged.finish(&rules.shelf);
+    let mut shapes = Shapes::of(&board);
+    for finding in review.judged.findings.iter_mut().chain(&mut review.judged.held) {
+        let about = [finding.card.as_str(), finding.subject.scope.name()];
+        finding.fingerprint_shape = shapes.shape(&about, &finding.subject.roots);
+    }
 }
 
 fn has_names(notes: &Notes) -> bool {

@@ -9,18 +9,22 @@ use crate::recognise::board::Board;
 use crate::recognise::load::Load;
 use crate::recognise::order::natural;
 use crate::recognise::parallel::Group;
+use crate::recognise::shape::Roots;
 use crate::recognise::site::{ChannelSite, Site};
 
 /// An array: `U1`.
 pub(super) fn array(site: &Site<'_>) -> Subject {
     let name = site.array.refdes.clone();
-    Subject { scope: Scope::Array, place: name.clone(), refdes: vec![name.clone()], name, channel: None }
+    let roots = Roots { elements: site.array.elements.to_vec(), nets: Vec::new() };
+    Subject { scope: Scope::Array, place: name.clone(), refdes: vec![name.clone()], name, channel: None, roots }
 }
 
 /// A channel: `U1.ch3`.
 pub(super) fn channel(site: &Site<'_>, channel: &ChannelSite<'_>) -> Subject {
     let name = channel_name(site, channel);
+    let nets = channel.channel.inputs.iter().map(|pin| pin.net).chain([channel.output()]).collect();
     Subject {
+        roots: Roots { elements: Vec::new(), nets },
         scope: Scope::Channel,
         place: name.clone(),
         name,
@@ -40,6 +44,7 @@ pub(super) fn load(site: &Site<'_>, channel: &ChannelSite<'_>, load: &Load) -> S
     // A net's name is no place: a load that only the notes put there is the channel's.
     let place = if at.starts_with("net:") { channel_name(site, channel) } else { name.clone() };
     Subject {
+        roots: Roots { elements: load.elements.to_vec(), nets: vec![channel.output()] },
         scope: Scope::Load,
         name,
         refdes: vec![site.array.refdes.clone()],
@@ -60,13 +65,15 @@ pub(super) fn parallel(board: &Board<'_>, group: &Group) -> Subject {
     let mut refdes: Vec<String> = group.members.iter().map(|&(array, _)| board.arrays[array].refdes.clone()).collect();
     refdes.dedup();
     let name = names.join("+");
-    Subject { scope: Scope::Parallel, place: name.clone(), name, refdes, channel: None }
+    let roots = Roots { elements: Vec::new(), nets: vec![group.output] };
+    Subject { scope: Scope::Parallel, place: name.clone(), name, refdes, channel: None, roots }
 }
 
 /// A return path: `U1.emitter`.
 pub(super) fn return_path(site: &Site<'_>) -> Subject {
     let name = format!("{}.emitter", site.array.refdes);
     Subject {
+        roots: Roots { elements: site.array.elements.to_vec(), nets: site.array.emitter_net().into_iter().collect() },
         scope: Scope::ReturnPath,
         place: name.clone(),
         name,
@@ -91,6 +98,7 @@ pub(super) fn driver(board: &Board<'_>, net: Id<Net>) -> Subject {
     refdes.sort_by(|a, b| natural(a, b));
     refdes.dedup();
     Subject {
+        roots: Roots { elements: Vec::new(), nets: vec![net] },
         scope: Scope::Driver,
         name: format!("net:{}", board.circuit.net_name(net)),
         refdes,
@@ -114,6 +122,7 @@ pub(super) fn rail(board: &Board<'_>, nets: &[Id<Net>], arrays: &[String]) -> Su
         })
         .collect();
     Subject {
+        roots: Roots { elements: Vec::new(), nets: nets.to_vec() },
         scope: Scope::Rail,
         name: names.join("+"),
         refdes: arrays.to_vec(),
@@ -125,7 +134,8 @@ pub(super) fn rail(board: &Board<'_>, nets: &[Id<Net>], arrays: &[String]) -> Su
 /// A part: `K3`.
 pub(super) fn part(board: &Board<'_>, element: Id<Element>) -> Subject {
     let name = board.circuit.refdes(element);
-    Subject { scope: Scope::Part, place: name.clone(), refdes: vec![name.clone()], name, channel: None }
+    let roots = Roots { elements: vec![element], nets: Vec::new() };
+    Subject { scope: Scope::Part, place: name.clone(), refdes: vec![name.clone()], name, channel: None, roots }
 }
 
 fn channel_name(site: &Site<'_>, channel: &ChannelSite<'_>) -> String {

@@ -193,3 +193,40 @@ fn a_supply_that_ramps_up_is_a_rail_and_a_pulse_on_an_input_is_none() {
         &["U1 x2003 pin-numbers", "  ch1 EN1 > OUT1: relay-coil K1@+12V"],
     );
 }
+
+/// The fingerprints of the findings of one board: card, place and shape.
+fn fingerprints(netlist: &str) -> Vec<(String, String, String)> {
+    let text = |value: &Value| value.as_str().unwrap_or("-").to_owned();
+    judged(netlist)
+        .iter()
+        .flat_map(|board| board["findings"].as_array().cloned().unwrap_or_default())
+        .map(|f| (text(&f["card"]), text(&f["fingerprint"]["place"]), text(&f["fingerprint"]["shape"])))
+        .collect()
+}
+
+const UNCLAMPED: &str = "board\nV1 +12V 0 12\nC1 +12V 0 100u\nU2 EN1 +5V 0 PIC16F\nC2 +5V 0 100n\n\
+     U1 EN1 0 0 0 0 0 0 0 CLAMP N7 N6 N5 N4 N3 N2 OUT1 ULN2003A\nK1 +12V OUT1 RELAY_12V\n";
+
+#[test]
+fn a_shape_stays_under_new_names_and_numbers_and_a_place_under_new_net_names() {
+    let before = fingerprints(UNCLAMPED);
+    assert!(before.iter().any(|(card, ..)| card == "inductive-unclamped"), "{before:?}");
+    assert!(before.iter().all(|(_, place, shape)| place.len() == 16 && shape.len() == 16), "{before:?}");
+    let nets = fingerprints(&UNCLAMPED.replace("OUT1", "GATE_COIL").replace("EN1", "GATE_ON"));
+    assert_eq!(before, nets);
+    let shapes = |list: Vec<(String, String, String)>| {
+        list.into_iter().map(|(card, _, shape)| (card, shape)).collect::<Vec<_>>()
+    };
+    let parts = fingerprints(&UNCLAMPED.replace("K1", "K41").replace("U1", "U7"));
+    assert_ne!(before, parts);
+    assert_eq!(shapes(before.clone()), shapes(parts));
+}
+
+#[test]
+fn another_neighbour_gives_another_shape() {
+    let shape = |netlist: &str| {
+        let found = fingerprints(netlist).into_iter().find(|(card, ..)| card == "inductive-unclamped");
+        found.map(|(.., shape)| shape)
+    };
+    assert_ne!(shape(UNCLAMPED), shape(&UNCLAMPED.replace("PIC16F", "AVR128")));
+}

@@ -1,5 +1,7 @@
 //! Verdicts on a small set of cards: class, what is missing, what is assumed, how parts of a board come together.
 
+use crate::recognise::shape::Roots;
+
 use super::super::card;
 use super::super::fact::{Assumed, Fact, Gap, Question};
 use super::super::finding::{Finding, Judged, Tally};
@@ -34,7 +36,14 @@ fn shelf(cards: Vec<Card>) -> Shelf {
 
 fn subject(name: &str) -> Subject {
     let place = format!("at {name}");
-    Subject { scope: Scope::Load, name: name.to_owned(), refdes: vec!["U1".to_owned()], channel: Some(3), place }
+    Subject {
+        scope: Scope::Load,
+        name: name.to_owned(),
+        refdes: vec!["U1".to_owned()],
+        channel: Some(3),
+        place,
+        roots: Roots::default(),
+    }
 }
 
 /// What `cards` say of one load.
