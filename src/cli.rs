@@ -26,6 +26,8 @@ pub(crate) struct Cli {
 pub(crate) enum Command {
     /// Judge each netlist
     Review(Review),
+    /// List rule cards, or show one whole
+    Cards(Cards),
     /// List part profiles, or show one whole
     Parts(Parts),
     /// Print the manual
@@ -60,6 +62,19 @@ pub(crate) struct Review {
     /// A folder that netlists may include files from; may be repeated
     #[arg(long, value_name = "FOLDER")]
     pub(crate) allow_include: Vec<PathBuf>,
+}
+
+/// `lowside cards`
+#[derive(clap::Args, Debug)]
+pub(crate) struct Cards {
+    /// A card's name
+    #[arg(value_name = "CARD", conflicts_with = "facts")]
+    pub(crate) wanted: Option<String>,
+    /// List every fact that a card may name, with its unit and meaning
+    #[arg(long)]
+    pub(crate) facts: bool,
+    #[command(flatten)]
+    pub(crate) output: Output,
 }
 
 /// `lowside parts`

@@ -13,6 +13,8 @@ mod review;
 mod trial;
 
 pub use judge::finding::{Class, Verdict};
-pub use report::{Format, Look, PartListing, SinkError, into_sink, manual, part_listing, write_reviews};
+pub use report::{
+    CardListing, Format, Look, PartListing, SinkError, card_listing, into_sink, manual, part_listing, write_reviews,
+};
 pub use review::{Options, Review, review};
 pub use trial::{Trial, trials};

@@ -3,12 +3,12 @@
 use std::io::Write;
 use std::process::ExitCode;
 
-use lowside::{Options, SinkError, into_sink, manual, part_listing, review, write_reviews};
+use lowside::{Format, Look, Options, SinkError, card_listing, into_sink, manual, part_listing, review, write_reviews};
 
 mod cli;
 mod exit;
 
-use cli::{Cli, Command, completions};
+use cli::{Cli, Command, Output, completions};
 use exit::{Rule, Status};
 
 fn main() -> ExitCode {
@@ -42,19 +42,35 @@ fn main() -> ExitCode {
             });
             status(written, worst)
         }
-        Command::Parts(arguments) => match part_listing(arguments.wanted.as_deref()) {
-            Ok(parts) => {
-                let look = cli.look(&arguments.output);
-                let write = |out: &mut dyn Write| parts.write(out, arguments.output.format(), look);
-                status(into_sink(arguments.output.to.as_deref(), write), Status::Passes)
-            }
-            Err(text) => {
-                complain(&format!("lowside: {text}\n"));
-                Status::Unusable.into()
-            }
-        },
+        Command::Cards(arguments) => {
+            let listing = card_listing(arguments.wanted.as_deref(), arguments.facts);
+            listed(&cli, &arguments.output, listing, |cards, out, format, look| cards.write(out, format, look))
+        }
+        Command::Parts(arguments) => {
+            let listing = part_listing(arguments.wanted.as_deref());
+            listed(&cli, &arguments.output, listing, |parts, out, format, look| parts.write(out, format, look))
+        }
         Command::Manual => status(into_sink(None, |out| out.write_all(manual().as_bytes())), Status::Passes),
         Command::Completions { shell } => status(into_sink(None, |out| completions(*shell, out)), Status::Passes),
+    }
+}
+
+/// Writes what was asked for of the rules, or says why that cannot be asked for.
+fn listed<L>(
+    cli: &Cli,
+    output: &Output,
+    listing: Result<L, String>,
+    write: impl Fn(&L, &mut dyn Write, Format, Look) -> std::io::Result<()>,
+) -> ExitCode {
+    match listing {
+        Ok(listing) => {
+            let look = cli.look(output);
+            status(into_sink(output.to.as_deref(), |out| write(&listing, out, output.format(), look)), Status::Passes)
+        }
+        Err(text) => {
+            complain(&format!("lowside: {text}\n"));
+            Status::Unusable.into()
+        }
     }
 }
 

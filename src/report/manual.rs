@@ -46,6 +46,16 @@ lowside review NETLIST...
   --quiet                 only what is broken, and hazards that are not ruled out
   --color auto|always|never   colour the class words; NO_COLOR is honoured
 
+lowside cards [CARD]
+  Lists the rule cards with their classes; with a name, the whole card: its condition, limits,
+  words, sources and worked examples. Takes --as and --to.
+
+  --facts                 every fact that a card may name, with its unit and what it means
+
+    lowside cards
+    lowside cards clamp-low-rail
+    lowside cards --facts
+
 lowside parts [TYPE]
   Lists the part profiles; with a type designator or a profile's name, that profile with each number
   and where it was published. Takes --as and --to.

@@ -24,6 +24,7 @@ mod sample;
 #[cfg(test)]
 mod tests;
 
+pub use cards::{CardListing, card_listing};
 pub use look::Look;
 pub use manual::manual;
 pub use parts::{PartListing, part_listing};

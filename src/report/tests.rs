@@ -129,11 +129,19 @@ fn a_card_is_listed_on_a_line_and_written_whole_on_its_page() {
         holds: "!array.clamp_on_return",
         class_when: vec![("hazard", "array.safety")],
         limits: vec![("ohms", 10.0)],
+        message: "{{ array.name }} is wired wrongly.",
         why: "The clamp diode conducts as soon as the output rises.",
         remedy: "Tie the clamp pin to the supply of the loads.",
         caution: Some("Switch off first."),
         sources: &sources,
         overlaps: &[],
+        examples: vec![super::cards::ExampleRow {
+            verdict: "broken".to_owned(),
+            at: vec!["U1".to_owned()],
+            notes: None,
+            on: None,
+            netlist: "A board\nR1 A 0 1k".to_owned(),
+        }],
     };
     let list = printed(|out| cards::write_list(out, std::slice::from_ref(&card), Format::Text, Look::default()));
     assert_eq!(list, "clamp-on-return  damage  The clamp pin must not be on the return\n");
@@ -149,6 +157,8 @@ fn a_card_is_listed_on_a_line_and_written_whole_on_its_page() {
 
       Limit: ohms = 10
 
+      Says: {{ array.name }} is wired wrongly.
+
       Why: The clamp diode conducts as soon as the output rises.
 
       Change: Tie the clamp pin to the supply of the loads.
@@ -156,6 +166,10 @@ fn a_card_is_listed_on_a_line_and_written_whole_on_its_page() {
       Caution: Switch off first.
 
       Sources: common practice
+
+      Example, broken at U1:
+        A board
+        R1 A 0 1k
     ");
     let json = printed(|out| cards::write_page(out, &card, Format::Json, Look::default()));
     let json: serde_json::Value = serde_json::from_str(&json).unwrap();

@@ -13,6 +13,8 @@ use std::sync::Arc;
 use crate::base::notice::Notice;
 use crate::base::sources::Sources;
 use crate::judge::card::Card;
+use crate::judge::fact::FactDef;
+use crate::judge::facts::GROUPS;
 use crate::judge::finding::{Class, Judged, Verdict};
 
 /// What a review may rest on beside the netlist.
@@ -88,6 +90,11 @@ pub(crate) fn review_text(name: &str, netlist: &str, notes: Option<&str>) -> Vec
 /// The names of a netlist's top-level nets as spelled, in order; none where it cannot be read.
 pub(crate) fn net_names(netlist: &str) -> Vec<String> {
     input::from_text("netlist", netlist, None).map_or_else(|_| Vec::new(), pipeline::net_names)
+}
+
+/// Every fact that a card may name.
+pub(crate) fn facts() -> impl Iterator<Item = &'static FactDef> {
+    GROUPS.iter().copied().flatten()
 }
 
 /// The bundled cards, and those that were refused.

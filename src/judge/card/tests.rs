@@ -140,6 +140,7 @@ fn a_caution_is_required_by_the_worst_class_that_can_be_reached() {
 fn the_line_of_a_fault_in_an_example_is_the_files_own() {
     let text = card_with("verdict = \"holds\"", "verdict = = 1");
     let error = examples(&text).unwrap_err();
-    let at = error.span().unwrap().start;
-    assert_eq!(text[..at].lines().count(), CARD.lines().position(|line| line == "verdict = \"holds\"").unwrap() + 1);
+    let line = CARD.lines().position(|line| line == "verdict = \"holds\"").unwrap() + 1;
+    assert_eq!(text[..error.span().unwrap().start].lines().count(), line);
+    assert!(error.to_string().contains(&format!("line {line}, column 11")), "{error}");
 }

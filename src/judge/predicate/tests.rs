@@ -123,7 +123,7 @@ fn lists_are_looked_through_with_three_values() {
 #[test]
 fn a_fact_can_be_pinned_the_rest_steadied_and_memory_distrusted() {
     let vocabulary = sample::vocabulary();
-    let facts = sample::load().with("load.rating", range(0.3, 0.5)).with("load.ohms", Fact::number(9.0).from_memory());
+    let facts = sample::load().with("load.rating", range(0.3, 0.5)).with("load.ohms", Fact::number(9.0).remembered());
     let reach = facts.reach();
     let view = View::new(&reach, &[]);
     let truth = |text: &str, view: View<'_>| lower(text, &sample::terms(&vocabulary, &[])).unwrap().truth(&view);

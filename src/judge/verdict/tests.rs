@@ -169,7 +169,7 @@ fn a_fact_that_says_nothing_of_its_gap_is_named() {
 #[test]
 fn a_number_from_memory_leaves_open_what_it_would_break() {
     let lines = [("holds", "\"load.current <= load.rating\"")];
-    let rating = |amps: f64| sample::load().with("load.rating", Fact::number(amps).from_memory());
+    let rating = |amps: f64| sample::load().with("load.rating", Fact::number(amps).remembered());
     let open = finding(&lines, &rating(0.1));
     assert_eq!(open.verdict, Verdict::Unproven);
     assert_eq!(open.missing[0].reasons, ["load.rating is from memory: verify it against the data sheet"]);
