@@ -5,7 +5,7 @@ use crate::circuit::model::Net;
 use crate::judge::fact::{Fact, Gap, facts};
 use crate::recognise::board::Board;
 use crate::recognise::driver::{Driver, DriverKind, Drivers};
-use crate::recognise::returns::{could_join_outside, joined, references};
+use crate::recognise::returns::{could_join_outside, joined, joining_part, references};
 use crate::recognise::site::Site;
 
 use super::{ask, supply};
@@ -120,6 +120,8 @@ fn return_joined(site: &Site<'_>, references: &[Id<Net>], emitter: Id<Net>) -> F
         }
         if let Some(unread) = ask::unread(board, reference).or_else(|| ask::unread(board, emitter)) {
             gap = Some(unread);
+        } else if let Some(part) = joining_part(board, emitter, reference) {
+            gap = Some(Gap::Question(ask::returns_joined_at(board, emitter, reference, part)));
         } else if could_join_outside(board, reference, emitter) {
             gap = Some(Gap::Question(ask::returns_joined(board, reference, emitter)));
         } else {
