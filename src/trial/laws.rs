@@ -280,3 +280,6 @@ fn wrapped(list: Vec<Piece>, text: &str) -> Vec<Piece> {
     out.push(piece(format!("X{SHEET} {names} SHEET_ALL")));
     out
 }
+
+#[cfg(test)]
+mod tests;
