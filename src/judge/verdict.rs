@@ -3,7 +3,9 @@
 
 use sha2::{Digest, Sha256};
 
+use crate::base::notice::{Notice, Severity};
 use crate::notes::model::Notes;
+use crate::notes::near::near;
 
 use super::argue::{self, Draft};
 use super::card::Card;
@@ -52,6 +54,30 @@ impl<'s> Judge<'s> {
             }
         }
         self
+    }
+
+    /// What is wrong with the limits that the notes set: a limit that its card does not have is an error, a card that is
+    /// not on the shelf is told.
+    pub(crate) fn wrong_limits(&self, notes: &Notes) -> Vec<Notice> {
+        let mut wrong = Vec::new();
+        for entry in &notes.limits {
+            let Some(card) = self.shelf.card(&entry.name.value) else {
+                let message = format!("no card `{}` is on the shelf: its limits change nothing", entry.name.value);
+                wrong.push(Notice::at(Severity::Note, entry.name.at, message));
+                continue;
+            };
+            for limit in &entry.says {
+                if card.limits.iter().any(|(name, _)| *name == limit.name.value) {
+                    continue;
+                }
+                let message = format!("the card `{}` has no limit `{}`", card.name, limit.name.value);
+                let mut notice = Notice::at(Severity::Error, limit.name.at, message);
+                let near = near(&limit.name.value, card.limits.iter().map(|(name, _)| name.as_str()));
+                notice.hint = near.map(|near| format!("did you mean `{near}`?"));
+                wrong.push(notice);
+            }
+        }
+        wrong
     }
 
     /// Holds every card of `scope` against one subject. `subject` is asked for only where something is worth telling.

@@ -32,7 +32,7 @@ const SECTIONS: [(&str, &str); 11] = [
 ];
 
 /// Sections that are read and checked, and that no judgement uses in this release.
-const NOT_USED_YET: [&str; 4] = ["ties", "duty", "limits", "concessions"];
+const NOT_USED_YET: [&str; 3] = ["ties", "duty", "concessions"];
 
 /// Reads the notes file `name` with this `text`. The notes hold what could be read; an error among the notices means
 /// that the file must be mended before a review can rest on it.

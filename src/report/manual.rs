@@ -127,9 +127,16 @@ THE NOTES FILE (TOML) says what a netlist cannot:
     [types."RELAY_5V"]           # every part of a type
     ohms = 125.0                 # also henries, operate_v, release_v
 
+    [limits.clamp-low-rail]      # a card's own limits; `lowside cards CARD` shows them
+    drain = 0.002
+
+    [[together]]                 # channels that are on or off together (mode = "always"), or of
+    channels = ["U1.ch1", "U1.ch2"]
+    at_most = 1                  # which only so many are on at once
+
   A name that does not exist on the board is an error, as is a key that does not exist. Sections
-  that are understood and not used yet ([[ties]], [[duty]], [[together]], [limits.CARD],
-  [[concessions]]) are named when they occur.
+  that are understood and not used yet ([[ties]], [[duty]], [[concessions]]) are named when they
+  occur.
 
 LIMITS
   A review reads the netlist and nothing else: not the layout, wire lengths, copper or creepage. It

@@ -167,16 +167,17 @@ fn judge_board(
     let rails = Rails::find(&circuit, &connectivity, &net_notes);
     let ground = Ground { circuit: &circuit, connectivity: &connectivity, rails: &rails, natures: &natures };
     let Found { arrays, without_roles } = find(&ground, &noted);
+    let judge = Judge::new(&rules.shelf, held).with_limits_of(notes);
     if let Some(directory) = &directory {
-        let wrong = check_names(notes, &Names::of(&circuit, directory, &rules.library, &arrays));
-        if let Some(first) = wrong.first() {
-            review.error = Some(first.clone());
-            review.problems.extend(wrong);
+        let mut wrong = check_names(notes, &Names::of(&circuit, directory, &rules.library, &arrays));
+        wrong.extend(judge.wrong_limits(notes));
+        review.error = wrong.iter().find(|notice| notice.severity == Severity::Error).cloned();
+        review.problems.extend(wrong);
+        if review.error.is_some() {
             return;
         }
     }
     let board = Board::new(&circuit, &connectivity, &rails, &natures, &noted, &rules.library, arrays);
-    let judge = Judge::new(&rules.shelf, held);
     let whole = whole(&board);
     let arrays: Vec<Came> =
         (0..board.arrays.len()).into_par_iter().map(|number| array(&board, number, &judge, &whole)).collect();

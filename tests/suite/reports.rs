@@ -78,3 +78,21 @@ fn every_shell_gets_a_completion_script() {
         assert!(check(&["completions", shell], 0).0.contains("stop-at"), "{shell}");
     }
 }
+
+#[test]
+fn notes_move_a_cards_limit_and_a_limit_that_is_not_there_is_an_error() {
+    let folder = tempfile::tempdir().unwrap();
+    let board = folder.path().join("board.cir");
+    let notes = folder.path().join("board.notes.toml");
+    let netlist = "board\nV1 +24V 0 24\nV2 +5V 0 5\nV3 EN 0 PULSE(0 5 0 1u 1u 1m 2m)\nC1 +24V 0 100u\n\
+         R1 +24V OUT 10k\nU1 EN 0 0 0 0 0 0 0 +5V N7 N6 N5 N4 N3 N2 OUT ULN2003A\n";
+    std::fs::write(&board, netlist).unwrap();
+    let (out, _) = check(&["review", &board.to_string_lossy()], 1);
+    assert!(out.contains("clamp-low-rail"), "{out}");
+    std::fs::write(&notes, "[limits.clamp-low-rail]\ndrain = 0.01\n").unwrap();
+    let (out, _) = check(&["review", &board.to_string_lossy()], 0);
+    assert!(!out.contains("clamp-low-rail at"), "{out}");
+    std::fs::write(&notes, "[limits.clamp-low-rail]\ndrian = 0.01\n").unwrap();
+    let (out, _) = check(&["review", &board.to_string_lossy()], 2);
+    assert!(out.contains("did you mean `drain`?"), "{out}");
+}
