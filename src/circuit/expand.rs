@@ -153,7 +153,7 @@ impl<'a> Expander<'a> {
         let nowhere = Span { file: FileId(0), start: 0, len: 0 };
         let top = Id::new(0);
         let empty = self.names.intern("");
-        self.circuit.sheets.push(Sheet { name: empty, parent: top, span: None });
+        self.circuit.sheets.push(Sheet { name: empty, parent: top });
         let zero = self.names.intern("0");
         let ground = Net { name: zero, sheet: top, span: nowhere, global: true, port: false, unread: None };
         self.circuit.nets.push(ground);
@@ -287,9 +287,7 @@ impl<'a> Expander<'a> {
         let known = definition.map(|id| &program.definitions[id]);
         let ports = known.map_or(&[] as &[Name], |known| &known.ports);
         let ports = ports.iter().map(|&port| self.names.name(program, port)).collect();
-        let own = self.names.name(program, name);
-        let row = BlockType { name: own, ports, definition: known.map(|known| known.span) };
-        let id = self.circuit.block_types.push(row);
+        let id = self.circuit.block_types.push(BlockType { ports });
         self.blocks.insert((name, definition), id);
         id
     }

@@ -25,7 +25,7 @@ impl<'a> Expander<'a> {
         let ports = self.nets.len();
         self.push_ports(template, part, definition, frame);
         let name = self.names.name(program, part.refdes);
-        let sheet = self.circuit.sheets.push(Sheet { name, parent: frame.sheet, span: Some(part.span) });
+        let sheet = self.circuit.sheets.push(Sheet { name, parent: frame.sheet });
         self.check_ports(definition, part, ports, frame)?;
         let waits = self.plan.row(definition.scope).is_some_and(|row| row.waits);
         let mark = self.evaluator.mark();

@@ -3,9 +3,6 @@
 //! [`load`] reads every file of a board and sorts its lines into a [`Program`]; a later room decides which of its
 //! definitions stay closed; [`expand`] makes one flat circuit of each board in it.
 
-// Lifted when the pipeline is joined.
-#![allow(dead_code)]
-
 mod amount;
 mod compile;
 mod condition;

@@ -116,8 +116,6 @@ pub(crate) struct Sheet {
     pub name: Name,
     /// The sheet around it; the top level is its own parent.
     pub parent: Id<Sheet>,
-    /// The instance's line, for messages; none at top level.
-    pub span: Option<Span>,
 }
 
 /// A `.model` that some element uses.
@@ -129,8 +127,6 @@ pub(crate) struct Model {
     pub kind: ModelKind,
     /// Parameters with plain numeric values, keys folded to lower case, sorted by key.
     pub parameters: Vec<(String, f64)>,
-    /// Its line.
-    pub span: Span,
 }
 
 /// The kind of device that a `.model` describes.
@@ -167,12 +163,8 @@ pub(crate) enum ModelKind {
 /// What is known of a block's outside.
 #[derive(Debug, Clone)]
 pub(crate) struct BlockType {
-    /// The type's name: `ULN2003A`, `CONN_4`.
-    pub name: Name,
     /// Port names in order, where the netlist defines the subcircuit; empty where it does not.
     pub ports: Vec<Name>,
-    /// The `.subckt` line, where there is one.
-    pub definition: Option<Span>,
 }
 
 /// Two inductors that share flux.

@@ -33,7 +33,7 @@ pub(super) fn read(
         chain.push(base);
     }
     let own = &program.models[line];
-    let mut model = Model { name: own.name, kind: ModelKind::Other, parameters: Vec::new(), span: own.span };
+    let mut model = Model { name: own.name, kind: ModelKind::Other, parameters: Vec::new() };
     // The base first: what a later line says takes its place.
     for &line in chain.iter().rev() {
         add(program, sources, evaluator, line, &mut model)?;

@@ -1,6 +1,6 @@
 //! The connectivity graph: nets are its nodes, links its edges; and which pins each net touches.
 
-use petgraph::graph::{EdgeIndex, NodeIndex, UnGraph};
+use petgraph::graph::{NodeIndex, UnGraph};
 use petgraph::unionfind::UnionFind;
 use petgraph::visit::EdgeRef;
 use rustc_hash::FxHashMap;
@@ -126,11 +126,6 @@ impl Connectivity {
             }
         }
         nets
-    }
-
-    /// The two ends of a link.
-    pub(crate) fn ends(&self, link: Id<Link>) -> Option<(Id<Net>, Id<Net>)> {
-        self.graph.edge_endpoints(EdgeIndex::new(link.index())).map(|(a, b)| (Id::new(a.index()), Id::new(b.index())))
     }
 }
 

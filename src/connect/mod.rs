@@ -1,8 +1,6 @@
 //! Connectivity: parts as typed links between nets, rails and returns, conduction paths and bridges.
 //!
 //! petgraph stays inside this room. What a link is comes in as plain data, so that knowledge of parts stays above.
-// Lifted when the pipeline is joined.
-#![allow(dead_code)]
 
 pub(crate) mod graph;
 pub(crate) mod link;

@@ -82,7 +82,6 @@ pub(super) fn draft(
         passes_when: if verdict == Verdict::Broken { passes_when(&card.holds, vocabulary, view) } else { None },
         remedy: words(&card.remedy),
         caution: card.caution.as_ref().map(words),
-        sources: card.sources.clone(),
         fingerprint_place: fingerprint(&[&card.name, subject.scope.name(), &subject.place]),
         // The graph around the subject is the caller's; it fills this in.
         fingerprint_shape: String::new(),

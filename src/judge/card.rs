@@ -147,6 +147,7 @@ pub(crate) fn examples(text: &str) -> Result<Vec<Example>, toml::de::Error> {
 ///
 /// # Errors
 /// The first thing that is wrong with them, with its place.
+#[cfg(test)]
 pub(crate) fn examples_in(file: FileId, text: &str) -> Result<Vec<Example>, Box<Notice>> {
     let list = examples(text).map_err(|error| unreadable(file, "the examples cannot be read", &error))?;
     match list.iter().find(|example| verdict_of(&example.verdict).is_none()) {
@@ -182,6 +183,7 @@ pub(crate) fn read(file: FileId, stem: &str, text: &str, vocabulary: &Vocabulary
 ///
 /// # Errors
 /// The first thing that is wrong with it, with its place.
+#[cfg(test)]
 pub(crate) fn read_whole(file: FileId, stem: &str, text: &str, vocabulary: &Vocabulary) -> Result<Card, Box<Notice>> {
     let card = Reader { file, text, vocabulary, thorough: true }.read(stem)?;
     examples_in(file, text)?;

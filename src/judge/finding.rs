@@ -112,8 +112,6 @@ pub(crate) struct Finding {
     pub remedy: String,
     /// The caution, where harm is possible.
     pub caution: Option<String>,
-    /// Published sources of the rule.
-    pub sources: Vec<String>,
     /// Hash of card and place.
     pub fingerprint_place: String,
     /// Hash of card and the graph around the subject.

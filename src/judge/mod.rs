@@ -1,6 +1,4 @@
 //! Facts, rule cards and verdicts: what was computed, held against what a card demands.
-// Lifted when the pipeline is joined.
-#![allow(dead_code)]
 
 mod argue;
 pub(crate) mod card;

@@ -2,12 +2,16 @@
 
 use rayon::prelude::*;
 
-use crate::base::notice::{Notice, Severity};
+use crate::base::notice::Notice;
+#[cfg(test)]
+use crate::base::notice::Severity;
 use crate::base::rules::CARDS;
 use crate::base::sources::Sources;
 use crate::base::span::FileId;
 
-use super::card::{Card, read, read_whole};
+#[cfg(test)]
+use super::card::read_whole;
+use super::card::{Card, read};
 use super::fact::{SCOPES, Scope};
 use super::facts::GROUPS;
 use super::vocabulary::Vocabulary;
@@ -24,6 +28,7 @@ pub(crate) struct Shelf {
 
 /// A card's file that a user wrote.
 #[derive(Clone, Debug)]
+#[cfg(test)]
 pub(crate) struct CardFile {
     /// What messages call it.
     pub name: String,
@@ -75,6 +80,7 @@ impl Shelf {
     /// The same with a house's cards, later files before earlier ones. A file of a known name replaces the whole card,
     /// and that is said. A card with a fault of any kind, examples included, is refused with its place in its own text,
     /// which becomes part of `sources`; what stood under its name stays.
+    #[cfg(test)]
     pub(crate) fn with_house(self, files: Vec<CardFile>, sources: &mut Sources) -> (Self, Vec<Notice>) {
         let Self { vocabulary, mut cards, .. } = self;
         let mut notices = Vec::new();

@@ -56,11 +56,6 @@ impl Vocabulary {
         &self.slots[scope as usize]
     }
 
-    /// Every fact, scope by scope.
-    pub(crate) fn all(&self) -> impl Iterator<Item = &FactDef> {
-        self.slots.iter().flatten()
-    }
-
     /// Every name that a card of `scope` may write.
     pub(crate) fn names_in_reach(&self, scope: Scope) -> Vec<String> {
         let facts = |&scope: &Scope| self.of(scope).iter().map(move |def| format!("{}.{}", scope.name(), def.field));

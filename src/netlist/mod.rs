@@ -4,9 +4,6 @@
 //! (`reader`): `lines` finds them, `words` cuts them, `directive`, `encrypted` and `title` say what they are. What a
 //! part's line means depends on the rest of the netlist and is asked for later, line by line: `element`.
 
-// Lifted when the pipeline is joined.
-#![allow(dead_code)]
-
 pub(crate) mod assignment;
 mod class;
 pub(crate) mod decode;

@@ -112,7 +112,8 @@ impl Word {
 pub(crate) struct Deck {
     /// The file.
     pub file: FileId,
-    /// The title line, if the first line is one.
+    /// The title line, if the first line is one: nothing but the reader's own tests asks for it.
+    #[cfg(test)]
     pub title: Option<Span>,
     /// All words of all statements.
     pub words: Vec<Word>,

@@ -93,9 +93,15 @@ impl<'t> Reader<'t> {
         if let Passing::To(end, span) = self.passing {
             self.remarks.open_block(span, end);
         }
-        let (file, title) = (self.file, self.title);
-        let notices = self.remarks.notices(self.text, file);
-        Deck { file, title, words: self.words, statements: self.statements, notices }
+        let notices = self.remarks.notices(self.text, self.file);
+        Deck {
+            file: self.file,
+            #[cfg(test)]
+            title: self.title,
+            words: self.words,
+            statements: self.statements,
+            notices,
+        }
     }
 
     fn slice(&self, line: Line) -> &'t str {

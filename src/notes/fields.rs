@@ -117,11 +117,6 @@ impl<'a> Fields<'a> {
         self.reader.error(place, message, hint);
     }
 
-    /// The table's own place, for what is missing in it.
-    pub(super) fn place(&self) -> Span {
-        self.place
-    }
-
     /// Who gathers the problems.
     pub(super) fn reader(&mut self) -> &mut Reader {
         self.reader

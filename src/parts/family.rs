@@ -161,48 +161,9 @@ pub(crate) enum FamilyKind {
 }
 
 impl FamilyKind {
-    /// Current through it cannot stop at once: a coil.
-    pub(crate) fn is_inductive(self) -> bool {
-        matches!(
-            self,
-            Self::Relay
-                | Self::Motor
-                | Self::Stepper
-                | Self::Fan
-                | Self::Solenoid
-                | Self::Valve
-                | Self::MagneticBuzzer
-                | Self::Transformer
-        )
-    }
-
     /// A two-pole part that conducts one way as a diode does.
     pub(crate) fn is_diode(self) -> bool {
         matches!(self, Self::SignalDiode | Self::Rectifier | Self::Schottky | Self::Zener | Self::Tvs | Self::Led)
-    }
-
-    /// A part that limits a voltage by breaking down.
-    pub(crate) fn is_suppressor(self) -> bool {
-        matches!(self, Self::Zener | Self::Tvs | Self::TvsBidirectional | Self::EsdProtection | Self::Varistor)
-    }
-
-    /// A part whose pins may drive a net and may watch one: what hangs on it is decided elsewhere.
-    pub(crate) fn may_drive(self) -> bool {
-        matches!(
-            self,
-            Self::Controller
-                | Self::Logic
-                | Self::PortExpander
-                | Self::Comparator
-                | Self::OpAmp
-                | Self::Timer
-                | Self::Supervisor
-                | Self::MotorDriver
-                | Self::Transceiver
-                | Self::Sensor
-                | Self::Optocoupler
-                | Self::SourceArray
-        )
     }
 }
 

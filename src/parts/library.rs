@@ -123,6 +123,7 @@ impl Library {
     ///
     /// # Errors
     /// The first thing that is wrong with the file, with its place.
+    #[cfg(test)]
     pub(crate) fn add_part(&mut self, stem: &str, text: &str) -> Result<bool, Refused> {
         let file = PartFile::read(stem, Cow::Owned(text.to_owned()))?;
         let start = text.len() - file.body.len();
@@ -159,6 +160,7 @@ impl Library {
     ///
     /// # Errors
     /// The first thing that is wrong with the file, with its place.
+    #[cfg(test)]
     pub(crate) fn add_levels(&mut self, stem: &str, text: &str) -> Result<bool, Refused> {
         let levels = Levels::read(text).map_err(|error| Refused::shifted(&error, 0, text.len()))?;
         if levels.name != stem {

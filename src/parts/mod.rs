@@ -1,8 +1,5 @@
 //! Parts as data: profiles of sink arrays, families of other parts, logic families.
 
-// Lifted when the pipeline is joined.
-#![allow(dead_code)]
-
 pub(crate) mod clamp;
 mod class;
 pub(crate) mod family;

@@ -56,6 +56,7 @@ pub(crate) struct Line {
 
 impl Line {
     /// Output voltage at a current.
+    #[cfg(test)]
     pub(crate) fn at(self, current: Amps) -> Volts {
         Volts(self.v0.0 + self.ohms.0 * current.0)
     }

@@ -108,12 +108,7 @@ pub(crate) enum Kind {
     ShiftRegister,
 }
 
-impl Kind {
-    /// Output voltage follows R_on, there is no threshold of a Darlington.
-    pub(crate) fn is_mos(self) -> bool {
-        matches!(self, Self::Mos | Self::ShiftRegister)
-    }
-}
+impl Kind {}
 
 /// Heat paths and temperatures.
 #[derive(Clone, Debug, Default, PartialEq, Deserialize)]

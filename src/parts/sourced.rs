@@ -135,11 +135,6 @@ impl<T: Copy + PartialOrd> Limits<T> {
     pub(crate) fn highest(&self, grade: Option<&str>) -> Option<&Sourced<T>> {
         of_grade(&self.all, grade).reduce(|best, next| if next.value > best.value { next } else { best })
     }
-
-    /// Nobody gives a value.
-    pub(crate) fn is_empty(&self) -> bool {
-        self.all.is_empty()
-    }
 }
 
 macro_rules! graded {

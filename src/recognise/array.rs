@@ -50,8 +50,6 @@ pub(crate) struct ArrayPin {
     pub role: Role,
     /// Element and position.
     pub pin: Pin,
-    /// Pin number of the package where the map gives one, otherwise position, from 1.
-    pub number: u16,
     /// The net at it.
     pub net: Id<Net>,
 }

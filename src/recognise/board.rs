@@ -87,8 +87,15 @@ impl<'a> Board<'a> {
                 }
             }
         }
-        let mut coupled: Vec<Id<Element>> =
-            circuit.couplings.iter().flat_map(|coupling| [coupling.first, coupling.second]).collect();
+        let mut coupled: Vec<Id<Element>> = circuit
+            .couplings
+            .iter()
+            // A coupling that is not there, or of factor zero, couples nothing.
+            .filter(|coupling| {
+                circuit.elements[coupling.element].fitted && coupling.factor.is_none_or(|factor| factor > 0.0)
+            })
+            .flat_map(|coupling| [coupling.first, coupling.second])
+            .collect();
         coupled.sort_unstable();
         let mut returns: Vec<Id<Net>> =
             circuit.nets.ids().filter(|&net| rails.is_return(net) && !connectivity.pins(net).is_empty()).collect();

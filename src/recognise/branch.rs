@@ -2,7 +2,7 @@
 
 use smallvec::SmallVec;
 
-use crate::base::quantity::{Ohms, Volts};
+use crate::base::quantity::Ohms;
 use crate::base::table::Id;
 use crate::circuit::model::{Element, Net};
 use crate::connect::graph::Pin;
@@ -196,18 +196,5 @@ impl Branch {
     /// Whether nothing but joined copper, fuses, ferrites and shunts lies on the path.
     pub(crate) fn is_bare(&self, board: &Board<'_>) -> bool {
         self.links(board).all(|(link, _)| link.kind.is_low_resistance())
-    }
-
-    /// Sum of the breakdown voltages of zeners walked against their direction; none where one is not known.
-    pub(crate) fn breakdown(&self, board: &Board<'_>, outwards: bool) -> Option<Volts> {
-        let mut sum = 0.0;
-        for (link, forward) in self.links(board) {
-            match link.kind {
-                LinkKind::Zener(volts) if forward != outwards => sum += volts?.0,
-                LinkKind::Suppressor(volts) => sum += volts?.0,
-                _ => {}
-            }
-        }
-        Some(Volts(sum))
     }
 }

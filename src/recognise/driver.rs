@@ -21,8 +21,6 @@ pub(crate) struct Driver {
     pub net: Id<Net>,
     /// Resistance between it and the input; none where a part of it is not known.
     pub ohms: Option<Ohms>,
-    /// The elements between, the input's first.
-    pub through: SmallVec<[Id<Element>; 2]>,
 }
 
 /// What drives.
@@ -143,18 +141,14 @@ impl Drivers {
             return;
         }
         let mut ohms = Some(0.0);
-        let mut through = SmallVec::new();
         for hop in &path.hops {
             let link = board.connectivity.link(hop.link);
             ohms = match link.kind {
                 LinkKind::Resistor(part) => ohms.zip(part).map(|(sum, part)| sum + part.0),
                 _ => ohms,
             };
-            if link.kind != LinkKind::Wire {
-                through.push(link.element);
-            }
         }
-        self.list.push(Driver { kind, net: path.end, ohms: ohms.map(Ohms), through });
+        self.list.push(Driver { kind, net: path.end, ohms: ohms.map(Ohms) });
     }
 }
 

@@ -28,8 +28,6 @@ pub(crate) struct Load {
     pub ohms: Option<Ohms>,
     /// The connector pin behind which it is.
     pub behind: Option<Pin>,
-    /// The output net, for a load that only the notes tell of.
-    pub at_net: Option<Id<Net>>,
     /// It conducts only when a LED in it is turned round.
     pub led_reversed: bool,
 }
@@ -262,7 +260,6 @@ fn as_load(board: &Board<'_>, branch: &Branch, row: usize) -> Option<Load> {
         supply,
         ohms: series_ohms(board, branch),
         behind: None,
-        at_net: None,
         led_reversed,
     })
 }

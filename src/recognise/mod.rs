@@ -1,6 +1,4 @@
 //! Recognition: arrays with pins and channels, loads, drivers, turn-off paths, parallel groups, the return.
-// Lifted when the pipeline is joined.
-#![allow(dead_code)]
 
 pub(crate) mod array;
 pub(crate) mod board;

@@ -23,7 +23,7 @@ pub(crate) fn add(board: &Board<'_>, array: &Array<'_>, channel: &Channel, hangi
         // The notes speak of the load that is drawn, or of one that is not.
         match hanging.loads.first_mut() {
             Some(load) => amend(load, noted),
-            None => hanging.loads.push(told(board, noted, hanging.connectors.first().copied(), output)),
+            None => hanging.loads.push(told(board, noted, hanging.connectors.first().copied())),
         }
     }
     let pins: Vec<Pin> = hanging.connectors.clone();
@@ -32,7 +32,7 @@ pub(crate) fn add(board: &Board<'_>, array: &Array<'_>, channel: &Channel, hangi
             if noted.says.kind.as_ref().is_some_and(|kind| kind.value == word::LoadKind::LogicInput) {
                 hanging.receivers.push(pin);
             }
-            hanging.loads.push(told(board, noted, Some(pin), output));
+            hanging.loads.push(told(board, noted, Some(pin)));
         }
     }
     if hanging.loads.is_empty()
@@ -55,7 +55,7 @@ fn amend(load: &mut Load, noted: &NotedLoad<'_>) {
     }
 }
 
-fn told(board: &Board<'_>, noted: &NotedLoad<'_>, pin: Option<Pin>, output: Id<Net>) -> Load {
+fn told(board: &Board<'_>, noted: &NotedLoad<'_>, pin: Option<Pin>) -> Load {
     let supply = noted.supply.or_else(|| pin.and_then(|pin| rail_beside(board, pin)));
     Load {
         kind: noted.says.kind.as_ref().map_or(LoadKind::Unknown, |kind| kind_of(kind.value)),
@@ -64,7 +64,6 @@ fn told(board: &Board<'_>, noted: &NotedLoad<'_>, pin: Option<Pin>, output: Id<N
         supply: supply.map_or(Supply::Unknown, Supply::Rail),
         ohms: ohms_of(noted),
         behind: pin,
-        at_net: Some(output),
         led_reversed: false,
     }
 }
@@ -77,7 +76,6 @@ fn unknown(board: &Board<'_>, pin: Pin) -> Load {
         supply: rail_beside(board, pin).map_or(Supply::Unknown, Supply::Rail),
         ohms: None,
         behind: Some(pin),
-        at_net: None,
         led_reversed: false,
     }
 }

@@ -103,5 +103,5 @@ fn from_numbers(circuit: &Circuit, element: Id<Element>, profile: &Profile) -> R
 
 fn pin(circuit: &Circuit, element: Id<Element>, index: u16, role: Role) -> ArrayPin {
     let net = circuit.pins(element)[usize::from(index)];
-    ArrayPin { role, pin: Pin { element, index }, number: index + 1, net }
+    ArrayPin { role, pin: Pin { element, index }, net }
 }

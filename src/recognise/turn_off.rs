@@ -87,12 +87,25 @@ impl Ways {
         let others = far_side(board, hanging, load, output, far);
         ways.clamp(board, array, channel, &others);
         ways.own(board, near, &others, own);
+        ways.built_in(board, array, channel, load, far);
         ways
     }
 
-    /// Whether any way is sure.
-    pub(crate) fn sure(&self) -> bool {
-        self.list.iter().any(|way| !matches!(way.target, Target::Perhaps(_)))
+    /// Suppression inside the part, as its type or the notes tell.
+    fn built_in(&mut self, board: &Board<'_>, array: &Array<'_>, channel: &Channel, load: &Load, far: Id<Net>) {
+        let by_type = load.elements.iter().any(|&element| {
+            let kind = board.natures.kind(element);
+            kind.by_type && kind.family.is_some_and(|family| family.suppressed.is_some())
+        });
+        let noted = load
+            .behind
+            .and_then(|pin| board.noted.load_at_pin(pin))
+            .or_else(|| board.noted.load_at_channel(&array.refdes, channel.index))
+            .or_else(|| board.noted.load_at_net(channel.output.net));
+        if by_type || noted.is_some_and(|load| load.says.suppressed.is_some()) {
+            let path = Path { hops: SmallVec::new(), end: far, dead_end: false };
+            self.list.push(Way { by: By::BuiltIn, path, target: Target::OtherEnd, breakdown: None });
+        }
     }
 
     /// The ways by the array's clamp pin.

@@ -1,6 +1,4 @@
 //! Results as text and as JSON: one file a format.
-// Lifted when the pipeline is joined.
-#![allow(dead_code)]
 
 use std::io::{self, Write};
 

@@ -96,7 +96,6 @@ pub(crate) fn finding(card: &str, class: Class, subject: &str, message: &str) ->
         passes_when: None,
         remedy: "Tie the clamp pin of U1 to +12V.".to_owned(),
         caution: None,
-        sources: vec!["common practice".to_owned()],
         fingerprint_place: "0123456789abcdef".to_owned(),
         fingerprint_shape: "fedcba9876543210".to_owned(),
     }

@@ -2,7 +2,6 @@
 
 use crate::judge::fact::{Fact, Gap, facts};
 use crate::parts::input::OpenInput;
-use crate::recognise::driver::{DriverKind, Drivers};
 use crate::recognise::load::LoadKind;
 use crate::recognise::site::{ChannelSite, Site};
 
@@ -66,11 +65,6 @@ fn driven(site: &Site<'_>, channel: &ChannelSite<'_>) -> Fact {
         return Fact::default().gap(Gap::Question(ask::inputs_of(site)));
     }
     Fact::flag(false).at(site.array.span, "its input")
-}
-
-/// Whether one of `drivers` is more than a tie or a resistor.
-pub(crate) fn is_switched(drivers: &Drivers) -> bool {
-    drivers.list.iter().any(|driver| !matches!(driver.kind, DriverKind::Rail | DriverKind::Return))
 }
 
 fn open_name(open: OpenInput) -> &'static str {

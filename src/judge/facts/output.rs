@@ -79,6 +79,9 @@ fn tied(site: &Site<'_>, channel: &ChannelSite<'_>, wanted: fn(End) -> Option<Id
                 .at(board.circuit.nets[net].span, "tied to its output");
             (fact, Some(net))
         }
+        None if channel.hanging.branches.cut => {
+            (Fact::reason("the wiring around the output is larger than one judgement looks at", None), None)
+        }
         None => match ask::unread(board, output) {
             Some(gap) if channel.hanging.branches.list.is_empty() => (Fact::default().gap(gap), None),
             _ => (Fact::flag(false), None),

@@ -1,12 +1,10 @@
 //! Facts of a load: what feeds it, and how its stored energy leaves when the channel opens.
 
 use crate::base::quantity::Volts;
-use crate::base::table::Id;
-use crate::circuit::model::Net;
 use crate::connect::link::LinkKind;
 use crate::connect::rails::Role;
 use crate::judge::fact::{Fact, FactValue, Gap, Interval, facts};
-use crate::recognise::load::{Load, LoadKind, Supply, forward_drop};
+use crate::recognise::load::{Load, Supply, forward_drop};
 use crate::recognise::site::{ChannelSite, Site};
 use crate::recognise::turn_off::{By, Target, Way, Ways};
 
@@ -320,14 +318,4 @@ pub(crate) fn gaps_of(from: &[&Fact]) -> Fact {
     } else {
         fact
     }
-}
-
-/// The clamp pin's own net for a load, where the array has one.
-pub(crate) fn clamp_net(site: &Site<'_>, channel: &ChannelSite<'_>) -> Option<Id<Net>> {
-    site.array.clamp_of(channel.channel).map(|pin| pin.net)
-}
-
-/// Whether the load is one that a notes file calls nothing.
-pub(crate) fn is_nothing(load: &Load) -> bool {
-    load.kind == LoadKind::Nothing
 }
