@@ -3,7 +3,7 @@
 use rustc_hash::{FxHashMap, FxHashSet};
 use smallvec::SmallVec;
 use std::cmp::Ordering;
-use std::sync::RwLock;
+use std::sync::{Arc, OnceLock, RwLock};
 
 use crate::base::quantity::Ohms;
 use crate::base::table::Id;
@@ -19,7 +19,7 @@ use super::array::Array;
 use super::nature::{Nature, Natures};
 use super::noted::Noted;
 use super::order;
-use super::returns::Negative;
+use super::returns::{Negative, Network, Reference, find_analogue_references};
 use super::sanity::is_given;
 
 /// Everything below the judgement of one board, joined.
@@ -48,6 +48,9 @@ pub(crate) struct Board<'a> {
     empty_places: Vec<Id<Net>>,
     several_returns: bool,
     negatives: RwLock<FxHashMap<Id<Net>, Negative>>,
+    networks: RwLock<FxHashMap<Id<Net>, Arc<Network>>>,
+    analogue: OnceLock<Vec<Reference>>,
+    joined: RwLock<FxHashMap<(Id<Net>, Id<Net>), bool>>,
 }
 
 /// What a pin does to the net it is on, as far as the part is known.
@@ -121,6 +124,9 @@ impl<'a> Board<'a> {
             empty_places,
             several_returns,
             negatives: RwLock::default(),
+            networks: RwLock::default(),
+            analogue: OnceLock::new(),
+            joined: RwLock::default(),
         }
     }
 
@@ -285,6 +291,36 @@ impl<'a> Board<'a> {
     /// Whether the netlist shows more than one return.
     pub(crate) fn has_several_returns(&self) -> bool {
         self.several_returns
+    }
+
+    /// The return network around `negative`, walked once.
+    pub(crate) fn network(&self, negative: Id<Net>, walk: impl FnOnce() -> Network) -> Arc<Network> {
+        if let Some(known) = self.networks.read().ok().and_then(|known| known.get(&negative).cloned()) {
+            return known;
+        }
+        let walked = Arc::new(walk());
+        if let Ok(mut known) = self.networks.write() {
+            known.insert(negative, Arc::clone(&walked));
+        }
+        walked
+    }
+
+    /// Whether `walk` joins the coppers of two nets, asked once for a pair.
+    pub(crate) fn joined_returns(&self, a: Id<Net>, b: Id<Net>, walk: impl FnOnce() -> bool) -> bool {
+        let pair = (self.connectivity.copper(a), self.connectivity.copper(b));
+        if let Some(known) = self.joined.read().ok().and_then(|known| known.get(&pair).copied()) {
+            return known;
+        }
+        let joined = walk();
+        if let Ok(mut known) = self.joined.write() {
+            known.insert(pair, joined);
+        }
+        joined
+    }
+
+    /// The analogue and signal grounds of the board that a part takes as its reference, looked for once.
+    pub(crate) fn analogue_references(&self) -> &[Reference] {
+        self.analogue.get_or_init(|| find_analogue_references(self))
     }
 
     /// What `find` says of the rail at `net`, asked once: a supply net has very many pins.

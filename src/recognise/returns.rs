@@ -1,5 +1,7 @@
 //! The return: how the current of an array's loads comes back from the emitter pin to the supply's negative terminal.
 
+use rustc_hash::FxHashSet;
+
 use crate::base::quantity::Ohms;
 use crate::base::table::Id;
 use crate::circuit::model::{Element, Net};
@@ -7,7 +9,9 @@ use crate::connect::graph::Pin;
 use crate::connect::link::{Link, LinkKind};
 use crate::connect::rail_name::ReturnKind;
 use crate::connect::rails::Role;
+use crate::connect::segments::Bridge;
 
+use super::array::Array;
 use super::board::{Board, PinUse};
 use super::driver::{DriverKind, Drivers};
 
@@ -164,9 +168,10 @@ fn is_positive(board: &Board<'_>, rail: Id<crate::connect::rails::Rail>) -> bool
     board.rails.rails[rail].level.is_none_or(|level| level.nominal.0 > 0.0)
 }
 
-/// Whether direct current can get from `a` to `b` over the return network.
+/// Whether direct current can get from `a` to `b` over the return network; walked once for a pair of coppers.
 pub(crate) fn joined(board: &Board<'_>, a: Id<Net>, b: Id<Net>) -> bool {
-    board.connectivity.same(a, b) || board.connectivity.joins(a, b, |_, link| is_return_link(board, link))
+    let walk = || board.connectivity.joins(a, b, |_, link| is_return_link(board, link));
+    board.connectivity.same(a, b) || board.joined_returns(a, b, walk)
 }
 
 /// What may lie between an emitter pin and its return and carry the loads' current: copper, a sense resistor, a choke, a
@@ -247,7 +252,7 @@ pub(crate) fn driver_references(board: &Board<'_>, drivers: &Drivers) -> Vec<Ref
 }
 
 /// The analogue and signal grounds of the board that a part takes as its reference, arrays and connectors aside.
-pub(crate) fn analogue_references(board: &Board<'_>) -> Vec<Reference> {
+pub(crate) fn find_analogue_references(board: &Board<'_>) -> Vec<Reference> {
     let analogue = |net: &Id<Net>| board.rails.role(*net) == Role::Return(ReturnKind::Signal);
     let mut list = Vec::new();
     for net in board.circuit.nets.ids().filter(analogue) {
@@ -271,6 +276,36 @@ impl Reference {
     }
 }
 
+/// The return network around one supply's negative terminal, walked once: a board may have thousands of arrays on it.
+#[derive(Debug, Default)]
+pub(crate) struct Network {
+    bridges: Vec<Behind>,
+}
+
+/// A bridge of a return network and what hangs behind it.
+#[derive(Debug)]
+struct Behind {
+    link: Link,
+    nets: FxHashSet<Id<Net>>,
+    /// Arrays whose emitter current flows through it, by number.
+    arrays: Vec<usize>,
+}
+
+impl Network {
+    fn of(board: &Board<'_>, negative: Id<Net>) -> Self {
+        let segments = board.connectivity.segments(negative, |_, link| is_return_link(board, link));
+        let behind = |bridge: Bridge| {
+            let nets: FxHashSet<Id<Net>> = bridge.behind.into_iter().collect();
+            let within = |array: &Array<'_>| array.emitters().any(|pin| nets.contains(&pin.net));
+            let arrays =
+                board.arrays.iter().enumerate().filter(|(_, array)| within(array)).map(|(row, _)| row).collect();
+            Behind { link: *board.connectivity.link(bridge.link), nets, arrays }
+        };
+        let carries = |bridge: &Bridge| board.connectivity.link(bridge.link).kind != LinkKind::Wire;
+        Self { bridges: segments.bridges.into_iter().filter(carries).map(behind).collect() }
+    }
+}
+
 /// The links that the current of `emitter` shares with one of `references` on its way to `negative`. A part that hangs
 /// behind such a link together with its own supplies moves as a whole: it is not lifted.
 pub(crate) fn shared(board: &Board<'_>, emitter: Id<Net>, references: &[Reference], negative: Id<Net>) -> Vec<Shared> {
@@ -280,34 +315,24 @@ pub(crate) fn shared(board: &Board<'_>, emitter: Id<Net>, references: &[Referenc
     if !apart(emitter) || !references.iter().any(|reference| apart(reference.net)) {
         return shared;
     }
-    let segments = board.connectivity.segments(negative, |_, link| is_return_link(board, link));
-    for bridge in &segments.bridges {
-        let link = *board.connectivity.link(bridge.link);
-        if link.kind == LinkKind::Wire || !bridge.behind.contains(&emitter) {
-            continue;
-        }
+    let network = board.network(negative, || Network::of(board, negative));
+    for behind in network.bridges.iter().filter(|behind| behind.nets.contains(&emitter)) {
         let lifted = |reference: &&Reference| {
             let supplies = &reference.supplies;
-            let as_a_whole = !supplies.is_empty() && supplies.iter().all(|net| bridge.behind.contains(net));
-            bridge.behind.contains(&reference.net) && !as_a_whole
+            let as_a_whole = !supplies.is_empty() && supplies.iter().all(|net| behind.nets.contains(net));
+            behind.nets.contains(&reference.net) && !as_a_whole
         };
-        let lifted: Vec<&Reference> = references.iter().filter(lifted).collect();
-        if lifted.is_empty() {
-            continue;
-        }
-        let arrays: Vec<usize> = (0..board.arrays.len())
-            .filter(|&array| board.arrays[array].emitters().any(|pin| bridge.behind.contains(&pin.net)))
-            .collect();
+        let link = behind.link;
         let ohms = match link.kind {
             LinkKind::Resistor(ohms) => ohms,
             LinkKind::Inductor => board.winding_ohms(link.element),
             _ => board.noted.element_ohms(link.element),
         };
-        shared.extend(lifted.into_iter().map(|reference| Shared {
+        shared.extend(references.iter().filter(lifted).map(|reference| Shared {
             element: link.element,
             ohms,
             reference: reference.clone(),
-            arrays: arrays.clone(),
+            arrays: behind.arrays.clone(),
         }));
     }
     shared

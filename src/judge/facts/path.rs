@@ -10,8 +10,7 @@ use crate::judge::fact::{Assumed, Fact, FactValue, Gap, Interval, facts};
 use crate::recognise::board::Board;
 use crate::recognise::load::{Load, Supply};
 use crate::recognise::returns::{
-    Negative, Reference, Shared, analogue_references, could_join_outside, driver_references, joined, joining_part,
-    negative, shared,
+    Negative, Reference, Shared, could_join_outside, driver_references, joined, joining_part, negative, shared,
 };
 use crate::recognise::site::Site;
 
@@ -207,7 +206,7 @@ fn worst(site: &Site<'_>, emitter: Id<Net>, feeds: &[Feed]) -> Option<Worst> {
     let board = site.board;
     let drivers = site.channels.iter().flat_map(|channel| &channel.drivers);
     let mut references: Vec<Reference> = drivers.flat_map(|drivers| driver_references(board, drivers)).collect();
-    references.extend(analogue_references(board));
+    references.extend(board.analogue_references().iter().cloned());
     references.sort_by(|a, b| (a.analogue, a.net, &a.supplies, a.by).cmp(&(b.analogue, b.net, &b.supplies, b.by)));
     references.dedup_by(|a, b| (a.analogue, a.net, &a.supplies) == (b.analogue, b.net, &b.supplies));
     let mut worst: Option<Worst> = None;
