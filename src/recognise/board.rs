@@ -50,8 +50,11 @@ pub(crate) struct Board<'a> {
     negatives: RwLock<FxHashMap<Id<Net>, Negative>>,
     networks: RwLock<FxHashMap<Id<Net>, Arc<Network>>>,
     analogue: OnceLock<Vec<Reference>>,
-    joined: RwLock<FxHashMap<(Id<Net>, Id<Net>), bool>>,
+    joined: RwLock<FxHashMap<Coppers, bool>>,
 }
+
+/// Two nets, each by the number that its copper shares.
+type Coppers = (Id<Net>, Id<Net>);
 
 /// What a pin does to the net it is on, as far as the part is known.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
