@@ -56,7 +56,10 @@ pub struct Review {
 /// One review a board: a file without an element at top level holds a board for each definition that nobody uses.
 #[must_use]
 pub fn review(netlist: &Path, options: &Options) -> Vec<Review> {
-    let name = netlist.to_string_lossy().into_owned();
+    let name = match netlist.to_string_lossy() {
+        name if name == "-" => "standard input".to_owned(),
+        name => name.into_owned(),
+    };
     match input::read(netlist, options) {
         Ok(input) => worth_telling(pipeline::run(&name, input, false)),
         Err(notice) => vec![Review::unreadable(name, notice)],
