@@ -87,7 +87,7 @@ impl Ground<'_, '_> {
     }
 
     fn straight(&self, inputs: &[(u8, Id<Net>)], outputs: &[(u8, Id<Net>)]) -> bool {
-        let count = outputs.len() as u8;
+        let count = outputs.len().min(usize::from(u8::MAX) - 1) as u8;
         let mut ours = 0;
         let mut straight = 0;
         for (channel, input) in inputs {
@@ -96,7 +96,9 @@ impl Ground<'_, '_> {
                 outputs.iter().find(|(channel, _)| *channel == wanted).and_then(|(_, net)| self.index_in_name(*net))
             };
             ours += usize::from(at(*channel) == Some(index));
-            straight += usize::from(at(count + 1 - channel) == Some(index));
+            // An instance may show fewer outputs than inputs.
+            let mirrored = (count + 1).checked_sub(*channel);
+            straight += usize::from(mirrored.and_then(at) == Some(index));
         }
         // The middle channel of seven pairs up under both.
         straight >= 3 && ours <= 1

@@ -230,3 +230,13 @@ fn another_neighbour_gives_another_shape() {
     };
     assert_ne!(shape(UNCLAMPED), shape(&UNCLAMPED.replace("PIC16F", "AVR128")));
 }
+
+/// Found by fuzzing: fewer outputs than inputs made the test of the straight order count below zero.
+#[test]
+fn an_array_may_show_fewer_outputs_than_inputs() {
+    check(
+        "board\n.subckt ULN2003A IN1 IN2 IN3 IN4 IN5 IN6 IN7 GND COM OUT1 OUT2 OUT3\n.ends\n\
+         XU1 UP1 UP2 UP3 UP4 UP5 UP6 UP7 0 +12V LIFT1 LIFT2 LIFT3 ULN2003A\nK1 +12V LIFT1 RELAY_12V\nV1 +12V 0 12\n",
+        &["U1 x2003 port-names", "  ch1 UP1 > LIFT1: relay-coil K1@+12V"],
+    );
+}
