@@ -72,7 +72,6 @@ impl<T> Table<T> {
     }
 
     /// The rows as a slice.
-    #[cfg(test)]
     #[must_use]
     pub(crate) fn rows(&self) -> &[T] {
         &self.rows

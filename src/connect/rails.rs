@@ -1,5 +1,7 @@
 //! Rails and returns: which nets supply, at which voltage, and how that is known.
 
+use rayon::prelude::*;
+
 use crate::base::quantity::Volts;
 use crate::base::span::Span;
 use crate::base::table::{Id, Table};
@@ -99,10 +101,18 @@ impl Rails {
         let potentials = potentials(circuit, connectivity);
         let floating_returns = floating_returns(connectivity, &potentials);
         let mut found = Self { roles: vec![Role::Signal; circuit.nets.len()], rails: Table::new() };
+        // Names are read on every core: a board may have a million, and each is read by itself.
+        let names: Vec<NameSays> = circuit
+            .nets
+            .rows()
+            .par_iter()
+            .with_min_len(1_024)
+            .map(|net| rail_name::read(circuit.names.text(net.name)))
+            .collect();
         for (id, net) in circuit.nets.iter() {
             let note = notes.binary_search_by_key(&id, |(net, _)| *net).ok().map(|at| &notes[at].1);
             let text = circuit.names.text(net.name);
-            let mut says = rail_name::read(text);
+            let mut says = names[id.index()];
             if rail_name::is_letter(text) && (net.sheet.index() > 0 || connectivity.pins(id).len() < RETURN_PINS) {
                 says = NameSays::Signal;
             }

@@ -4,9 +4,11 @@
 use std::cell::Cell;
 use std::io::{self, Write};
 
-use serde::ser::{Serialize, SerializeStruct, Serializer};
+use rayon::prelude::*;
+use serde::ser::{Error as _, Serialize, SerializeSeq, SerializeStruct, Serializer};
+use serde_json::value::to_raw_value;
 
-use crate::review::Review;
+use crate::review::{ArraySummary, Review};
 
 mod rows;
 #[cfg(test)]
@@ -44,6 +46,25 @@ impl<F: Fn() -> I, I: Iterator<Item: Serialize>> Serialize for Each<F> {
     }
 }
 
+/// The arrays of a board, written on every core a batch at a time.
+struct Arrays<'a>(&'a [ArraySummary]);
+
+/// Arrays of which the text stands in memory at once.
+const BATCH: usize = 1_024;
+
+impl Serialize for Arrays<'_> {
+    fn serialize<S: Serializer>(&self, serializer: S) -> Result<S::Ok, S::Error> {
+        let mut rows = serializer.serialize_seq(Some(self.0.len()))?;
+        for batch in self.0.chunks(BATCH) {
+            let texts: Result<Vec<_>, _> = batch.par_iter().map(|array| to_raw_value(&Array::from(array))).collect();
+            for text in texts.map_err(S::Error::custom)? {
+                rows.serialize_element(&text)?;
+            }
+        }
+        rows.end()
+    }
+}
+
 impl<I: Iterator<Item = Review>> Serialize for Document<I> {
     fn serialize<S: Serializer>(&self, serializer: S) -> Result<S::Ok, S::Error> {
         let mut document = serializer.serialize_struct("Document", 3)?;
@@ -67,7 +88,7 @@ impl Serialize for Board {
         let problems =
             || review.error.iter().chain(review.problems.iter().filter(|&p| Some(p) != review.error.as_ref()));
         board.serialize_field("problems", &Each(|| problems().map(|notice| Problem::new(notice, sources))))?;
-        board.serialize_field("arrays", &Each(|| review.arrays.iter().map(Array::from)))?;
+        board.serialize_field("arrays", &Arrays(&review.arrays))?;
         board.serialize_field("findings", &Each(|| judged.findings.iter().map(|row| Finding::new(row, sources))))?;
         let questions = || judged.questions.iter().enumerate();
         board
