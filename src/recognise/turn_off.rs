@@ -86,7 +86,7 @@ impl Ways {
         };
         let others = far_side(board, hanging, load, output, far);
         ways.clamp(board, array, channel, &others);
-        ways.own(board, near, &others, own);
+        ways.own(board, output, near, &others, own);
         ways.built_in(board, array, channel, load, far);
         ways
     }
@@ -123,17 +123,18 @@ impl Ways {
                 return;
             }
         }
-        let found = board.connectivity.paths(start, passes, |net| ends_at(board, net, others));
+        let output = channel.output.net;
+        let found = board.connectivity.paths(start, passes, |net| ends_at(board, output, net, others));
         self.cut |= found.cut;
         for path in found.found {
             self.add(board, By::Clamp, path, others);
         }
     }
 
-    fn own(&mut self, board: &Board<'_>, near: Id<Net>, others: &[Id<Net>], own: Option<Link>) {
+    fn own(&mut self, board: &Board<'_>, output: Id<Net>, near: Id<Net>, others: &[Id<Net>], own: Option<Link>) {
         let pass =
             |link: &Link, forward: bool| own.is_none_or(|own| own.element != link.element) && passes(link, forward);
-        let found = board.connectivity.paths(near, pass, |net| ends_at(board, net, others));
+        let found = board.connectivity.paths(near, pass, |net| ends_at(board, output, net, others));
         self.cut |= found.cut;
         for path in found.found {
             let has = |wanted: fn(LinkKind) -> bool| {
@@ -222,10 +223,12 @@ fn passes(link: &Link, forward: bool) -> bool {
     }
 }
 
-fn ends_at(board: &Board<'_>, net: Id<Net>, others: &[Id<Net>]) -> At {
+fn ends_at(board: &Board<'_>, output: Id<Net>, net: Id<Net>, others: &[Id<Net>]) -> At {
     match target(board, net, others) {
         Some(Target::Perhaps(_)) => At::EndAndOn,
         Some(_) => At::End,
+        // The winding's own output is on its way, behind a resistor in series; another channel's is not.
+        None if board.connectivity.same(net, output) => At::On,
         None if board.channel_at_output(net).is_some() => At::End,
         None => At::On,
     }
