@@ -1,14 +1,17 @@
 //! Facts of a load: what feeds it, and how its stored energy leaves when the channel opens.
 
 use crate::base::quantity::Volts;
+use crate::circuit::model::Value;
 use crate::connect::link::LinkKind;
 use crate::connect::rails::Role;
 use crate::judge::fact::{Fact, FactValue, Gap, Interval, facts};
+use crate::parts::clamp::Avalanche;
 use crate::recognise::load::{Load, Supply, forward_drop};
 use crate::recognise::site::{ChannelSite, Site};
 use crate::recognise::turn_off::{By, Target, Way, Ways};
 
 use super::ask;
+use super::clamp::amps;
 use super::volts::rail_volts;
 
 facts! {
@@ -54,7 +57,7 @@ impl TurnOff {
                 None => Fact::ask(ask::load(board, load)),
             },
             inductive: inductive(site, load),
-            turn_off_path: turn_off_path(site, channel, ways),
+            turn_off_path: turn_off_path(site, channel, load, ways),
             turn_off_by: Fact::text(ways.list.first().map_or("nothing", |way| by_words(way.by))),
             // A load between output and return has its supply through a pull-up: the clamp pin is not its business.
             clamped: Fact::flag(
@@ -100,8 +103,31 @@ fn supply_volts(site: &Site<'_>, load: &Load) -> Fact {
     }
 }
 
+/// Whether the output withstands the coil's energy by its own avalanche: half of inductance times current squared
+/// against the rating of a single pulse.
+fn by_avalanche(site: &Site<'_>, channel: &ChannelSite<'_>, load: &Load, avalanche: &Avalanche) -> Fact {
+    let board = site.board;
+    let drawn: f64 = load
+        .elements
+        .iter()
+        .map(
+            |&element| {
+                if let Value::Henries(henries) = board.circuit.elements[element].value { henries.0 } else { 0.0 }
+            },
+        )
+        .sum();
+    let noted = site.load_note(channel, load).and_then(|note| note.says.henries.as_ref()).map(|said| said.value.0);
+    let henries = noted.unwrap_or(drawn);
+    match (amps(board, load), avalanche.single_j.lowest(None)) {
+        (Some(amps), Some(rating)) if henries > 0.0 => Fact::flag(henries * amps * amps / 2.0 <= rating.value.0)
+            .formula("inductance x current^2 / 2", &[("inductance", henries, "H"), ("current", amps, "A")])
+            .source(rating.from.text()),
+        _ => Fact::ask(ask::load_ohms(board, load)),
+    }
+}
+
 /// Whether the energy has a way out; a search that was cut, a connector on the way or an unread line leaves it open.
-fn turn_off_path(site: &Site<'_>, channel: &ChannelSite<'_>, ways: &Ways) -> Fact {
+fn turn_off_path(site: &Site<'_>, channel: &ChannelSite<'_>, load: &Load, ways: &Ways) -> Fact {
     let board = site.board;
     let fact = if let Some(way) = ways.list.iter().find(|way| !matches!(way.target, Target::Perhaps(_))) {
         let fact = Fact::flag(true);
@@ -121,6 +147,8 @@ fn turn_off_path(site: &Site<'_>, channel: &ChannelSite<'_>, ways: &Ways) -> Fac
         unread
     } else if ways.cut {
         Fact::reason("the wiring around the load is larger than one judgement looks at", None)
+    } else if let Some(avalanche) = &site.array.profile.clamp.avalanche {
+        by_avalanche(site, channel, load, avalanche)
     } else {
         Fact::flag(false)
     };
