@@ -75,6 +75,12 @@ pub(crate) fn read(name: &str) -> NameSays {
     rail(plain)
 }
 
+/// Whether the name of a supply without a number is as often an input's in circuits that are simulated. Common practice.
+pub(crate) fn may_be_signal(name: &str) -> bool {
+    let name = name.rsplit('/').next().unwrap_or(name);
+    ["VIN", "PWR", "V+"].iter().any(|word| name.get(..word.len()).is_some_and(|head| head.eq_ignore_ascii_case(word)))
+}
+
 /// Whether the name is a single letter, as `M` for the return of a 24 V supply is: a weak sign by itself.
 pub(crate) fn is_letter(name: &str) -> bool {
     matches!(name.as_bytes(), [letter] if letter.is_ascii_alphabetic())

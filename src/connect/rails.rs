@@ -116,7 +116,7 @@ impl Rails {
             if rail_name::is_letter(text) && (net.sheet.index() > 0 || connectivity.pins(id).len() < RETURN_PINS) {
                 says = NameSays::Signal;
             }
-            let role = found.role_of(id, says, potentials[id.index()], note, &floating_returns);
+            let role = found.role_of(id, text, says, potentials[id.index()], note, &floating_returns);
             found.roles[id.index()] = role;
         }
         found.share_by_copper(circuit, connectivity);
@@ -149,6 +149,7 @@ impl Rails {
     fn role_of(
         &mut self,
         net: Id<Net>,
+        name: &str,
         says: NameSays,
         potential: Option<Potential>,
         note: Option<&NetNote>,
@@ -181,6 +182,7 @@ impl Rails {
         let steady = from_source.and_then(|level| match name_volts {
             _ if level.high.0 - level.low.0 < 1e-3 => Some(level),
             Some(name) => settled(level, name),
+            None if says == NameSays::UnknownRail && !rail_name::may_be_signal(name) => ramped(level),
             None => None,
         });
         let moving = from_source.is_some() && steady.is_none();
@@ -251,6 +253,13 @@ fn settled(level: Level, name: Volts) -> Option<Level> {
         (true, false) => Some(Level { high: level.low, nominal: level.low, ..level }),
         (false, false) => None,
     }
+}
+
+/// A supply that is switched on: from nothing to the voltage that it settles at.
+fn ramped(level: Level) -> Option<Level> {
+    let on = if level.low.0 == 0.0 { level.high } else { level.low };
+    let one_sided = level.low.0 == 0.0 || level.high.0 == 0.0;
+    one_sided.then_some(Level { low: on, nominal: on, high: on, ..level })
 }
 
 /// A net whose name is a single letter is a return only from this many pins on: `M` is also the middle of something.

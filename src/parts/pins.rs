@@ -322,10 +322,12 @@ fn number_in(pattern: &str, port: &str) -> Option<u8> {
     if pattern.get(at..=at) == Some("@") { number.checked_add(1) } else { Some(number) }
 }
 
-/// Upper case, without brackets, separators and bars.
+/// Upper case, without brackets, separators, bars and the marks of a pin that is active low.
 pub(super) fn folded(name: &str) -> String {
     name.chars()
-        .filter(|c| !matches!(c, '[' | ']' | '<' | '>' | '(' | ')' | '{' | '}' | '_' | '-' | '~' | '/' | ' ' | '\\'))
+        .filter(|c| {
+            !matches!(c, '[' | ']' | '<' | '>' | '(' | ')' | '{' | '}' | '_' | '-' | '~' | '/' | ' ' | '\\' | '*' | '!')
+        })
         .map(|c| c.to_ascii_uppercase())
         .collect()
 }

@@ -5,7 +5,7 @@ use smallvec::SmallVec;
 use crate::base::quantity::Ohms;
 use crate::base::table::Id;
 use crate::circuit::model::{Element, Net};
-use crate::connect::graph::Pin;
+use crate::connect::graph::{Hop, Pin};
 use crate::connect::link::{Link, LinkKind};
 use crate::connect::paths::{At, Path};
 use crate::connect::rails::Role;
@@ -21,6 +21,17 @@ pub(crate) struct Driver {
     pub net: Id<Net>,
     /// Resistance between it and the input; none where a part of it is not known.
     pub ohms: Option<Ohms>,
+    /// The way from the input to it.
+    way: SmallVec<[Hop; 1]>,
+}
+
+/// What lies between two drivers of one net that pull against each other.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(crate) enum Between {
+    /// A diode in each way: no current can pass from one to the other.
+    Blocked,
+    /// This resistance; none where a part of it is not known.
+    Ohms(Option<Ohms>),
 }
 
 /// What drives.
@@ -67,6 +78,38 @@ impl Driver {
             _ => None,
         }
     }
+
+    /// What lies between this driver and `other` of the same net. What both reach through is between neither.
+    pub(crate) fn to(&self, board: &Board<'_>, other: &Self) -> Between {
+        let shared = self.way.iter().zip(&other.way).take_while(|(a, b)| a.link == b.link).count();
+        let (near, far) = (self.way.get(shared..).unwrap_or(&[]), other.way.get(shared..).unwrap_or(&[]));
+        let passes = |out: &[Hop], back: &[Hop]| !blocks(board, out, true) && !blocks(board, back, false);
+        if !passes(near, far) && !passes(far, near) {
+            return Between::Blocked;
+        }
+        let (a, b) = (resistance(board, near), resistance(board, far));
+        Between::Ohms(a.zip(b).map(|(a, b)| Ohms(a.0 + b.0)))
+    }
+
+    /// A diode lies on the way to it.
+    fn is_one_way(&self, board: &Board<'_>) -> bool {
+        blocks(board, &self.way, true) || blocks(board, &self.way, false)
+    }
+}
+
+/// Whether a diode on the way from an input keeps current from coming in from its end (`inwards`), or from going out.
+fn blocks(board: &Board<'_>, way: &[Hop], inwards: bool) -> bool {
+    way.iter().any(|hop| {
+        let kind = board.connectivity.link(hop.link).kind;
+        matches!(kind, LinkKind::Diode | LinkKind::Schottky | LinkKind::Led) && hop.forward == inwards
+    })
+}
+
+fn resistance(board: &Board<'_>, way: &[Hop]) -> Option<Ohms> {
+    way.iter().try_fold(Ohms(0.0), |sum, hop| match board.connectivity.link(hop.link).kind {
+        LinkKind::Resistor(part) => part.map(|part| Ohms(sum.0 + part.0)),
+        _ => Some(sum),
+    })
 }
 
 impl Drivers {
@@ -136,19 +179,15 @@ impl Drivers {
         }
     }
 
+    /// Keeps one way to each driver; a way that carries both directions stands over one with a diode in it.
     fn push(&mut self, board: &Board<'_>, kind: DriverKind, path: &Path) {
-        if self.list.iter().any(|driver| driver.kind == kind && driver.net == path.end) {
-            return;
+        let ohms = resistance(board, &path.hops);
+        let driver = Driver { kind, net: path.end, ohms, way: path.hops.iter().copied().collect() };
+        match self.list.iter_mut().find(|known| known.kind == kind && known.net == path.end) {
+            Some(known) if known.is_one_way(board) && !driver.is_one_way(board) => *known = driver,
+            Some(_) => {}
+            None => self.list.push(driver),
         }
-        let mut ohms = Some(0.0);
-        for hop in &path.hops {
-            let link = board.connectivity.link(hop.link);
-            ohms = match link.kind {
-                LinkKind::Resistor(part) => ohms.zip(part).map(|(sum, part)| sum + part.0),
-                _ => ohms,
-            };
-        }
-        self.list.push(Driver { kind, net: path.end, ohms: ohms.map(Ohms) });
     }
 }
 

@@ -7,6 +7,7 @@ pub(crate) mod cut;
 pub(crate) mod definition;
 pub(crate) mod driver;
 pub(crate) mod find;
+pub(crate) mod gate;
 pub(crate) mod links;
 pub(crate) mod load;
 pub(crate) mod nature;

@@ -155,13 +155,22 @@ fn class_of(circuit: &Circuit, element: &Element) -> PartClass {
     }
 }
 
+/// More pins than a transistor has.
+const TRANSISTOR_PINS: u16 = 4;
+
 fn kind_of<'p>(circuit: &Circuit, library: &'p Library, element: &Element, class: PartClass) -> Kind<'p> {
     let text = element.part_type.map(|name| circuit.names.text(name));
     let model = element.model.map(|model| circuit.names.text(circuit.models[model].name));
-    let could_be_array = matches!(
-        class,
-        PartClass::Block | PartClass::Optocoupler | PartClass::Connector | PartClass::ResistorNetwork | PartClass::Line
-    );
+    let could_be_array = match class {
+        PartClass::Block
+        | PartClass::Optocoupler
+        | PartClass::Connector
+        | PartClass::ResistorNetwork
+        | PartClass::Line => true,
+        // An array of transistors may bear the letter of one.
+        PartClass::Transistor => element.pin_count > TRANSISTOR_PINS,
+        _ => false,
+    };
     if could_be_array
         && element.pin_count > 1
         && let Some(Match::Profile(hit)) = text.map(|text| library.find(text))

@@ -1,11 +1,13 @@
 //! Parallel groups: channels whose outputs are joined to share one load's current.
 
 use crate::base::table::Id;
-use crate::circuit::model::Net;
+use crate::circuit::model::{Element, Net};
 use crate::connect::paths::At;
+use crate::parts::family::FamilyKind;
 
 use super::board::Board;
-use super::driver::{DriverKind, Drivers};
+use super::driver::{Driver, DriverKind, Drivers};
+use super::gate;
 
 /// Channels with joined outputs, as rows of array and channel, in order.
 #[derive(Clone, Debug, PartialEq, Eq)]
@@ -23,8 +25,10 @@ pub(crate) enum Inputs {
     Joined,
     /// Different drivers.
     Split,
-    /// Different pins of parts that may or may not move together.
-    Unknown,
+    /// The parts are fed serially: who is on with whom is in the software.
+    Serial,
+    /// Gates whose inputs, or whose sense, the netlist does not tell apart.
+    Gates,
 }
 
 /// The groups in which the array `number` has the first member, in order of its channels.
@@ -67,35 +71,96 @@ pub(crate) fn inputs(board: &Board<'_>, group: &Group, drivers: &[Drivers]) -> I
         .filter_map(|&(array, channel)| board.arrays[array].channels[channel].inputs.first().map(|pin| pin.net))
         .collect();
     if nets.len() < group.members.len() {
-        // Parts that are fed serially have no input of their own: who is on with whom is in the software.
-        return Inputs::Unknown;
+        return Inputs::Serial;
     }
     if nets.windows(2).all(|pair| board.connectivity.same(pair[0], pair[1])) {
         return Inputs::Joined;
     }
-    let sources: Vec<Option<Id<Net>>> = drivers.iter().map(|drivers| source(board, drivers)).collect();
-    let Some(first) = sources.first().copied().flatten() else { return Inputs::Split };
-    if sources.iter().all(|source| source.is_some_and(|net| board.connectivity.same(net, first))) {
-        return Inputs::Joined;
+    let origins: Vec<Option<Origin>> = drivers.iter().map(|drivers| Origin::of(board, drivers)).collect();
+    let Some(first) = origins.first().and_then(Option::as_ref) else { return Inputs::Split };
+    let from_first = |origin: &Origin| board.connectivity.same(origin.net, first.net);
+    if !origins.iter().all(|origin| origin.as_ref().is_some_and(from_first)) {
+        let hidden = origins.iter().flatten().filter(|origin| origin.hidden).count();
+        return if hidden > 1 { Inputs::Gates } else { Inputs::Split };
     }
-    Inputs::Split
+    // A gate may turn the level over: two ways are one level only where they lead through the same parts.
+    let alike = origins.iter().flatten().all(|origin| origin.gates == first.gates);
+    if alike { Inputs::Joined } else { Inputs::Gates }
 }
 
-/// The one net that moves an input, where it is one: a pin, a source, a rail or a return.
-fn source(board: &Board<'_>, drivers: &Drivers) -> Option<Id<Net>> {
-    let mut nets = drivers.active().map(|driver| match driver.kind {
-        DriverKind::PushPull(pin) | DriverKind::OpenDrain(pin) | DriverKind::MayDrive(pin) => {
-            buffered(board, pin.element, driver.net)
+/// Gates in a row that are followed back.
+const MAX_GATES: usize = 4;
+
+/// Where the level at an input comes from.
+#[derive(Debug)]
+struct Origin {
+    /// The net in front of the first gate: of a pin, a source, a rail or a return.
+    net: Id<Net>,
+    /// The types of the gates between, from the input back.
+    gates: Vec<String>,
+    /// It is a pin of a logic part that may pass one signal on at several pins.
+    hidden: bool,
+}
+
+impl Origin {
+    /// Follows the one thing that drives an input back through buffers and gates; none where several things drive it.
+    fn of(board: &Board<'_>, drivers: &Drivers) -> Option<Self> {
+        let mut driver = sole(board, drivers)?;
+        let mut origin = Self { net: driver.net, gates: Vec::new(), hidden: false };
+        while origin.gates.len() < MAX_GATES {
+            let Some((gate, input)) = behind(board, &driver) else {
+                origin.hidden = driver.part().is_some_and(|part| may_be_buffers(board, part));
+                break;
+            };
+            origin.gates.push(gate);
+            origin.net = input;
+            let Some(next) = sole(board, &Drivers::of(board, input)) else { break };
+            origin.net = next.net;
+            driver = next;
         }
-        _ => driver.net,
-    });
-    let first = nets.next().or_else(|| drivers.list.first().map(|driver| driver.net))?;
-    nets.all(|net| board.connectivity.same(net, first)).then_some(first)
+        Some(origin)
+    }
 }
 
-/// The net in front of a single buffer or gate, so that two buffers fed from one net count as joined; the pin's own net
-/// where the part has more than one signal besides.
-fn buffered(board: &Board<'_>, element: Id<crate::circuit::model::Element>, at: Id<Net>) -> Id<Net> {
+/// The one thing that moves an input; a resistor to a rail or a return counts only where nothing else does.
+fn sole(board: &Board<'_>, drivers: &Drivers) -> Option<Driver> {
+    let mut active = drivers.active();
+    let first = active.next().or_else(|| drivers.list.first())?;
+    active.all(|driver| board.connectivity.same(driver.net, first.net)).then(|| first.clone())
+}
+
+/// The type of the gate, buffer or channel that a driver is, and the net at its input.
+fn behind(board: &Board<'_>, driver: &Driver) -> Option<(String, Id<Net>)> {
+    if let DriverKind::Channel(array, row) = driver.kind {
+        let array = board.arrays.get(array)?;
+        let channel = array.channels.get(row)?;
+        let first = channel.inputs.first()?.net;
+        let one = channel.inputs.iter().all(|pin| board.connectivity.same(pin.net, first));
+        return one.then(|| (array.profile.name().to_owned(), first));
+    }
+    let (DriverKind::PushPull(pin) | DriverKind::OpenDrain(pin) | DriverKind::MayDrive(pin)) = driver.kind else {
+        return None;
+    };
+    let input = gate::input_of(board, pin).or_else(|| only_other(board, pin.element, driver.net))?;
+    Some((board.circuit.part_type(pin.element).unwrap_or_default().to_ascii_uppercase(), input))
+}
+
+/// A logic part with one signal at several of its pins: its gates may be joined at their inputs. The outputs of a shift
+/// register, which has no such signal, say different things.
+fn may_be_buffers(board: &Board<'_>, element: Id<Element>) -> bool {
+    let mut signals: Vec<Id<Net>> =
+        board.circuit.pins(element).iter().copied().filter(|&net| board.rails.is_signal(net)).collect();
+    signals.sort_unstable();
+    board.natures.kind(element).family_kind() == Some(FamilyKind::Logic)
+        && signals.windows(2).any(|two| two[0] == two[1])
+}
+
+/// The net in front of a part with one signal besides `at`: a single buffer or gate. What a controller's other pin does
+/// is in its program.
+fn only_other(board: &Board<'_>, element: Id<Element>, at: Id<Net>) -> Option<Id<Net>> {
+    if !matches!(board.natures.kind(element).family_kind(), None | Some(FamilyKind::Logic)) {
+        return None;
+    }
     let mut others = board
         .circuit
         .pins(element)
@@ -103,7 +168,7 @@ fn buffered(board: &Board<'_>, element: Id<crate::circuit::model::Element>, at: 
         .copied()
         .filter(|&net| board.rails.is_signal(net) && !board.connectivity.same(net, at) && !board.is_lone(net));
     match (others.next(), others.next()) {
-        (Some(only), None) => only,
-        _ => at,
+        (Some(only), None) => Some(only),
+        _ => None,
     }
 }

@@ -13,7 +13,7 @@ use crate::connect::segments::Bridge;
 
 use super::array::Array;
 use super::board::{Board, PinUse};
-use super::driver::{DriverKind, Drivers};
+use super::driver::{Driver, DriverKind, Drivers};
 
 /// A link of the return network that carries the current of `emitter` and joins `reference` to the supply as well.
 #[derive(Clone, Debug)]
@@ -164,13 +164,24 @@ pub(crate) fn is_return_link(board: &Board<'_>, link: &Link) -> bool {
     kind && passes(link.from) && passes(link.to)
 }
 
+/// A source between two nets of which none is a positive supply.
+fn is_lower_source(board: &Board<'_>, link: &Link) -> bool {
+    let lower = |net: Id<Net>| match board.rails.role(net) {
+        Role::Rail(rail) => !is_positive(board, rail),
+        Role::Return(_) => true,
+        Role::Signal => false,
+    };
+    matches!(link.kind, LinkKind::Source(_)) && lower(link.from) && lower(link.to)
+}
+
 fn is_positive(board: &Board<'_>, rail: Id<crate::connect::rails::Rail>) -> bool {
     board.rails.rails[rail].level.is_none_or(|level| level.nominal.0 > 0.0)
 }
 
-/// Whether direct current can get from `a` to `b` over the return network; walked once for a pair of coppers.
+/// Whether direct current can get from `a` to `b` over the return network, and over the source of a negative supply, which
+/// conducts; walked once for a pair of coppers.
 pub(crate) fn joined(board: &Board<'_>, a: Id<Net>, b: Id<Net>) -> bool {
-    let walk = || board.connectivity.joins(a, b, |_, link| is_return_link(board, link));
+    let walk = || board.connectivity.joins(a, b, |_, link| is_return_link(board, link) || is_lower_source(board, link));
     board.connectivity.same(a, b) || board.joined_returns(a, b, walk)
 }
 
@@ -209,22 +220,27 @@ pub(crate) fn joining_part(board: &Board<'_>, a: Id<Net>, b: Id<Net>) -> Option<
     })
 }
 
-/// The nets that the drivers of an input take as their reference: return pins of driving parts, minus pins of sources.
-pub(crate) fn references(board: &Board<'_>, drivers: &Drivers) -> Vec<Id<Net>> {
-    let mut nets = Vec::new();
-    for driver in drivers.active() {
-        match driver.kind {
-            DriverKind::PushPull(pin) | DriverKind::OpenDrain(pin) | DriverKind::MayDrive(pin) => {
-                nets.extend(return_pins(board, pin));
-            }
-            DriverKind::Source(element) => nets.extend(board.circuit.pins(element).get(1).copied()),
-            DriverKind::Channel(array, _) => nets.extend(board.arrays[array].emitter_net()),
-            _ => {}
+/// The nets that a driver of an input takes as its reference: return pins of the driving part, the foot of a source. Empty
+/// where it has none: a switch, an optocoupler, a connector.
+pub(crate) fn references_of(board: &Board<'_>, driver: &Driver) -> Vec<Id<Net>> {
+    let mut nets: Vec<Id<Net>> = match driver.kind {
+        DriverKind::PushPull(pin) | DriverKind::OpenDrain(pin) | DriverKind::MayDrive(pin) => {
+            return_pins(board, pin).collect()
         }
-    }
+        DriverKind::Source(element) => {
+            board.circuit.pins(element).get(1).map(|&net| foot(board, net)).into_iter().collect()
+        }
+        DriverKind::Channel(array, _) => board.arrays[array].emitter_net().into_iter().collect(),
+        _ => Vec::new(),
+    };
     nets.sort_unstable();
     nets.dedup_by(|a, b| board.connectivity.same(*a, *b));
     nets
+}
+
+/// Where a source stands: its lower node, or under a fixed source below it the return of that.
+fn foot(board: &Board<'_>, net: Id<Net>) -> Id<Net> {
+    board.rails.rail(net).and_then(|rail| rail.reference).unwrap_or(net)
 }
 
 /// The returns at the pins of the part that `pin` belongs to: a block pin on a return counts as the block's reference.

@@ -1,7 +1,7 @@
 //! Facts of a parallel group: channels whose outputs are joined.
 
 use crate::connect::link::LinkKind;
-use crate::judge::fact::{Fact, Interval, facts};
+use crate::judge::fact::{Fact, FactValue, Interval, facts};
 use crate::parts::profile::Kind;
 use crate::recognise::board::Board;
 use crate::recognise::branch::End;
@@ -22,10 +22,11 @@ facts! {
         wired_logic: Flag, "Only pull-ups and receivers hang on the joined outputs: any channel may pull the level down.";
         inputs_joined: Flag, "The inputs follow one level: one net, or one net through separate resistors or buffers.";
         input_nets: Texts, "The nets at the inputs.";
-        packages: Number(""), "In how many packages the channels are.";
+        one_package: Flag, "All the channels are in one package.";
         bipolar: Flag, "The channels are bipolar: the warmer one takes more of the current.";
         loads: Text, "What the joined outputs drive.";
         current: Number("A"), "Current of the loads together: supply voltage over resistance.";
+        carries: Flag, "Current flows in the joined outputs; not known where their current is not.";
         member_rating: Number("A"), "Continuous current that one channel alone may carry.";
         safety: Flag, "The notes say that one of the loads must never be on by mistake.";
     }
@@ -43,6 +44,10 @@ impl Parallel {
         };
         let mut packages: Vec<usize> = group.members.iter().map(|(array, _)| *array).collect();
         packages.dedup();
+        let one_package = packages.iter().fold(Fact::flag(packages.len() < 2), |fact, &array| {
+            fact.at(board.arrays[array].span, "one of the packages")
+        });
+        let current = current(site, channel.loads().map(|(load, _)| load));
         let load_names: Vec<String> = loads.iter().map(|load| ask::load_name(board, load)).collect();
         Self {
             names: Fact::texts(group.members.iter().map(names).collect())
@@ -51,12 +56,13 @@ impl Parallel {
             wired_logic: Fact::flag(is_wired_logic(site, channel)),
             inputs_joined: inputs_joined(board, group),
             input_nets: Fact::texts(input_nets(board, group)),
-            packages: Fact::number(packages.len() as f64).at(site.array.span, "one of the packages"),
+            one_package,
             bipolar: Fact::flag(
                 packages.iter().all(|&array| board.arrays[array].profile.array.kind == Kind::Darlington),
             ),
             loads: Fact::text(if load_names.is_empty() { "no load".to_owned() } else { load_names.join(" and ") }),
-            current: current(site, channel.loads().map(|(load, _)| load)),
+            carries: carries(&current),
+            current,
             member_rating: member_rating(site),
             safety: Fact::flag(channel.loads().any(|(load, _)| supply::is_safety(site, channel, load))),
         }
@@ -107,8 +113,11 @@ fn inputs_joined(board: &Board<'_>, group: &Group) -> Fact {
             }
             fact
         }
-        Inputs::Unknown => {
+        Inputs::Serial => {
             Fact::reason("the channels have no inputs of their own: who is on with whom is in the software", None)
+        }
+        Inputs::Gates => {
+            Fact::reason("gates drive the inputs, and the netlist does not tell whether they say the same", None)
         }
     }
 }
@@ -138,7 +147,7 @@ fn current<'l>(site: &Site<'_>, loads: impl Iterator<Item = &'l crate::recognise
         };
         let amps = over(&volts, &ohms);
         sum = match (&sum.value, &amps.value) {
-            (crate::judge::fact::FactValue::Number(a), crate::judge::fact::FactValue::Number(b)) => assumptions_of(
+            (FactValue::Number(a), FactValue::Number(b)) => assumptions_of(
                 Fact::interval(Interval { low: a.low + b.low, nominal: a.nominal + b.nominal, high: a.high + b.high }),
                 &[&sum, &amps],
             ),
@@ -146,6 +155,14 @@ fn current<'l>(site: &Site<'_>, loads: impl Iterator<Item = &'l crate::recognise
         };
     }
     sum
+}
+
+/// Whether current flows: as unknown as the current itself.
+fn carries(current: &Fact) -> Fact {
+    match &current.value {
+        FactValue::Number(amps) => Fact::flag(amps.high > 0.0),
+        _ => current.clone(),
+    }
 }
 
 /// The rating of one channel: what the strictest maker lists, with the range over the makers.

@@ -2,6 +2,8 @@
 
 use crate::base::table::Id;
 use crate::circuit::model::Net;
+use crate::connect::graph::Pin;
+use crate::connect::link::LinkKind;
 use crate::connect::paths::At;
 use crate::connect::rails::Role as NetRole;
 use crate::judge::fact::{Fact, Interval, facts};
@@ -9,6 +11,7 @@ use crate::parts::pins::{Control, Role};
 use crate::recognise::array::{ArrayPin, PinsFrom, Sanity, WrongMap};
 use crate::recognise::board::Board;
 use crate::recognise::driver::{DriverKind, Drivers};
+use crate::recognise::nature::Nature;
 use crate::recognise::site::Site;
 
 use super::ask;
@@ -34,7 +37,7 @@ facts! {
         supply_most: Number("V"), "Greatest supply that the data sheet recommends.";
         supply_absolute: Number("V"), "Absolute maximum of the supply.";
         has_controls: Flag, "The part has enable, clear or register pins, and the instance shows them.";
-        controls_open: Text, "Enable, clear or register pins that nothing drives.";
+        controls_open: Texts, "Enable, clear or register pins that nothing drives.";
         control_open: Flag, "One of those pins floats.";
         held_off: Flag, "Something holds the outputs off at power-up: the enable or clear pin is driven, or held by a resistor or capacitor.";
         safety: Flag, "The notes say that one of its loads must never be on by mistake.";
@@ -60,8 +63,8 @@ impl Record {
         let (board, array) = (site.board, site.array);
         let supply = array.pins.iter().find(|pin| pin.role == Role::Supply);
         let controls = controls(site);
-        let open: Vec<&str> =
-            controls.iter().filter(|(_, drivers)| !drivers.any()).map(|(pin, _)| control_name(pin)).collect();
+        let floats = |(pin, drivers): &&(ArrayPin, Drivers)| !drivers.any() && ask::unread(board, pin.net).is_none();
+        let open: Vec<Box<str>> = controls.iter().filter(floats).map(|(pin, _)| control_name(pin).into()).collect();
         let limits = array.profile.supply.as_ref();
         let limit = |value: Option<(f64, String)>| match value {
             Some((value, source)) => Fact::number(value).source(source),
@@ -97,7 +100,7 @@ impl Record {
             ),
             has_controls: Fact::flag(!controls.is_empty()),
             control_open: control_open(site, &controls),
-            controls_open: Fact::text(open.join(" and ")),
+            controls_open: Fact::texts(open),
             held_off: held_off(site, &controls),
             safety: Fact::flag(
                 site.channels
@@ -158,7 +161,7 @@ fn shifted_words(site: &Site<'_>) -> String {
     let board = site.board;
     let Some(emitter) = site.array.emitters().next() else { return String::new() };
     let on = |index: u16| {
-        let pin = crate::connect::graph::Pin { index, ..emitter.pin };
+        let pin = Pin { index, ..emitter.pin };
         format!("{} is on {}", board.pin_words(pin), board.circuit.net_name(board.net_at(pin)))
     };
     let at = emitter.pin.index;
@@ -177,7 +180,29 @@ fn supply_open(site: &Site<'_>, pin: &ArrayPin) -> Fact {
     if let Some(gap) = ask::unread(site.board, pin.net) {
         return Fact::default().gap(gap);
     }
-    Fact::flag(is_open(site.board, pin.net)).at(site.array.span, "its own supply pin")
+    Fact::flag(is_open(site.board, pin.net) || feeds_nothing(site.board, pin.net))
+        .at(site.array.span, "its own supply pin")
+}
+
+/// Nothing but pins of arrays and capacitors on the net, and its name makes it no rail.
+fn feeds_nothing(board: &Board<'_>, net: Id<Net>) -> bool {
+    if !board.rails.is_signal(net) || board.circuit.nets[net].port || board.circuit.nets[net].global {
+        return false;
+    }
+    let idle = |pin: &Pin| {
+        matches!(board.natures.of(pin.element), Nature::Ignored | Nature::Array(_)) || is_capacitor(board, *pin)
+    };
+    let pins = board.connectivity.pins(net);
+    pins.len() <= MAX_IDLE && board.connectivity.joined(net).len() == 1 && pins.iter().all(idle)
+}
+
+/// Pins of a net that nothing feeds; one with more is fed by something that the netlist does not show.
+const MAX_IDLE: usize = 64;
+
+fn is_capacitor(board: &Board<'_>, pin: Pin) -> bool {
+    let mut hops = board.connectivity.hops(board.net_at(pin));
+    let own = hops.find(|hop| board.connectivity.link(hop.link).element == pin.element);
+    own.is_some_and(|hop| board.connectivity.link(hop.link).kind == LinkKind::Capacitor)
 }
 
 fn supply_volts(site: &Site<'_>, pin: &ArrayPin) -> Fact {
@@ -235,12 +260,18 @@ fn held_off(site: &Site<'_>, controls: &[(ArrayPin, Drivers)]) -> Fact {
     let clear = find(Control::ClearN).is_some_and(|(pin, drivers)| {
         drivers.active().next().is_some() || (held(drivers) && has_capacitor(site.board, pin.net))
     });
+    if !(enable || clear) && (find(Control::EnableN).is_none() || find(Control::ClearN).is_none()) {
+        return Fact::reason(
+            "which pin is the output enable and which the clear pin is not known",
+            Some(site.array.span),
+        );
+    }
     Fact::flag(enable || clear).at(site.array.span, "the array")
 }
 
 fn has_capacitor(board: &Board<'_>, net: Id<Net>) -> bool {
-    board.connectivity.hops(net).any(|hop| {
-        board.connectivity.link(hop.link).kind == crate::connect::link::LinkKind::Capacitor
-            && board.rails.is_return(hop.to)
-    })
+    board
+        .connectivity
+        .hops(net)
+        .any(|hop| board.connectivity.link(hop.link).kind == LinkKind::Capacitor && board.rails.is_return(hop.to))
 }

@@ -8,8 +8,8 @@ facts! {
     /// Unused channels.
     pub(crate) struct Spare in Array {
         spare: Number(""), "How many channels have an input and no load.";
-        spare_open: Number(""), "How many unused channels have an input that is left open.";
-        spare_names: Text, "The unused channels whose inputs are left open.";
+        spare_open: Flag, "An unused channel has an input that is left open.";
+        spare_names: Texts, "The unused channels whose inputs are left open.";
         spare_open_off: Flag, "An input left open keeps its channel off on this type.";
         spare_wired: Flag, "One of those channels has an output that is wired to something.";
     }
@@ -23,11 +23,11 @@ impl Spare {
             spare().filter(|channel| channel.drivers.iter().any(|drivers| !drivers.any())).collect();
         let elsewhere = site.inputs_lead_elsewhere() && site.channels.iter().any(ChannelSite::has_load);
         let open = if elsewhere { Vec::new() } else { open };
-        let names: Vec<String> = open.iter().map(|channel| format!("ch{}", channel.channel.index)).collect();
+        let names = open.iter().map(|channel| format!("ch{}", channel.channel.index).into()).collect();
         Self {
             spare: Fact::number(spare().count() as f64),
-            spare_open: Fact::number(open.len() as f64).at(site.array.span, "the array"),
-            spare_names: Fact::text(names.join(", ")),
+            spare_open: Fact::flag(!open.is_empty()).at(site.array.span, "the array"),
+            spare_names: Fact::texts(names),
             spare_open_off: Fact::flag(site.array.profile.input.open == OpenInput::Off),
             spare_wired: Fact::flag(open.iter().any(|channel| !site.board.is_lone(channel.output()))),
         }
