@@ -76,6 +76,8 @@ pub(crate) enum Sanity {
     Fails,
     /// It does not, and this known wrong map would.
     Explained(WrongMap),
+    /// It does not: the emitter is on no return, and inputs and outputs are mixed. The nodes stand in some other order.
+    Scrambled,
     /// The board does not tell.
     Undecided,
 }

@@ -52,6 +52,7 @@ impl Ground<'_, '_> {
             (Looks::Rail, Some(Looks::Return)) if self.mirrored(pins) => Sanity::Explained(WrongMap::Mirrored),
             (Looks::Rail, Some(Looks::Return)) => Sanity::Explained(WrongMap::EmitterClampExchanged),
             (_, Some(Looks::Return)) => Sanity::Fails,
+            _ if by_number && self.scrambled(pins) => Sanity::Scrambled,
             _ => Sanity::Undecided,
         }
     }
@@ -67,6 +68,17 @@ impl Ground<'_, '_> {
         let inputs = side(|role| if let Role::Input(channel) = role { Some(channel) } else { None });
         let outputs = side(|role| if let Role::Output(channel) = role { Some(channel) } else { None });
         self.straight(&inputs, &outputs).then_some(WrongMap::StraightOrder)
+    }
+
+    /// Loads on inputs that nothing drives and drivers on outputs without a load, two of each at least: no one wrong wire
+    /// does that, only another order of the nodes.
+    fn scrambled(&self, pins: &[ArrayPin]) -> bool {
+        let count = |wanted: &dyn Fn(&ArrayPin) -> bool| pins.iter().filter(|pin| wanted(pin)).count();
+        let signal = |pin: &ArrayPin| self.looks(pin.net) == Looks::Other;
+        let (loaded, driven) = (|pin: &ArrayPin| self.loaded(pin.net), |pin: &ArrayPin| self.driven(pin.net));
+        let inputs = count(&|pin| matches!(pin.role, Role::Input(_)) && signal(pin) && loaded(pin) && !driven(pin));
+        let outputs = count(&|pin| matches!(pin.role, Role::Output(_)) && signal(pin) && driven(pin) && !loaded(pin));
+        inputs >= 2 && outputs >= 2
     }
 
     /// Loads hang on inputs that nothing drives, and what drives is on outputs without a load.

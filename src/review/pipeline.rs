@@ -267,7 +267,8 @@ fn array(board: &Board<'_>, number: usize, judge: &Judge<'_>, whole: &[Fact]) ->
     let site = Site::of(board, number);
     came.summary = Some(summary::array(&site));
     // Cause before effect: under a pin map that cannot be right every other fact is a guess.
-    let doubt = matches!(site.array.sanity, Sanity::Explained(_)) && !facts::record::pins_confirmed(&site);
+    let doubt =
+        matches!(site.array.sanity, Sanity::Explained(_) | Sanity::Scrambled) && !facts::record::pins_confirmed(&site);
     came.not_judged = silence::of_array(&site, doubt);
     let reason = format!("the pin map of {} is in doubt", site.array.refdes);
     let doubted = |slots: Vec<Fact>| {

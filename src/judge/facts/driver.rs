@@ -48,7 +48,8 @@ impl Drive {
             }),
             strong_names: Fact::texts(strong.iter().map(|driver| driver_name(board, driver).into()).collect()),
             strong_ohms,
-            isolated: Fact::flag(references.is_empty() || emitter.is_none()),
+            // An emitter pin that hangs on nothing is told by itself.
+            isolated: Fact::flag(references.is_empty() || emitter.is_none_or(|net| board.is_lone(net))),
             reference: Fact::text(told(board, &references, emitter)),
             emitter: Fact::text(emitter.map_or(String::new(), |net| board.circuit.net_name(net))),
             return_joined: match emitter {

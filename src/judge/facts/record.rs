@@ -28,6 +28,7 @@ facts! {
         pins_make_sense: Flag, "Emitter on a return, clamp pin on none, inputs at the drivers: the order passes the sanity test.";
         pins_swapped: Flag, "The order fails the sanity test, and a known wrong order explains what is drawn.";
         pins_swapped_how: Text, "That wrong order in words.";
+        pins_scrambled: Flag, "Loads are on its inputs and drivers on its outputs: the nodes stand in some other order.";
         pins_doubt: Text, "Where the order leaves the emitter pin and the clamp pin, in words.";
         has_supply_pin: Flag, "The part has a supply pin of its own, and the instance shows it.";
         supply_net: Text, "The net at the part's own supply pin.";
@@ -45,7 +46,7 @@ facts! {
 }
 
 /// Facts that stand while the pin map is in doubt: they speak of the map itself.
-pub(crate) const STANDS_IN_DOUBT: [&str; 9] = [
+pub(crate) const STANDS_IN_DOUBT: [&str; 10] = [
     "name",
     "part_type",
     "profile",
@@ -54,6 +55,7 @@ pub(crate) const STANDS_IN_DOUBT: [&str; 9] = [
     "pins_make_sense",
     "pins_swapped",
     "pins_swapped_how",
+    "pins_scrambled",
     "pins_doubt",
 ];
 
@@ -80,6 +82,7 @@ impl Record {
                 .at(array.span, "the array"),
             pins_swapped: Fact::flag(matches!(array.sanity, Sanity::Explained(_)) && !pins_confirmed(site))
                 .at(array.span, "the array"),
+            pins_scrambled: Fact::flag(array.sanity == Sanity::Scrambled && !pins_confirmed(site)),
             pins_doubt: Fact::text(doubt(site)),
             pins_swapped_how: Fact::text(if let Sanity::Explained(wrong) = array.sanity { wrong.words() } else { "" }),
             has_supply_pin: Fact::flag(supply.is_some()),
@@ -141,6 +144,7 @@ fn doubt(site: &Site<'_>) -> String {
             return format!("loads hang on its inputs ({inputs}), and what drives is at its outputs ({outputs})");
         }
         Sanity::Explained(WrongMap::Shifted) => return shifted_words(site),
+        Sanity::Scrambled => return format!("loads hang on its inputs, drivers on its outputs (inputs {inputs}, …)"),
         _ => {}
     }
     let at = |what: &str, pin: &ArrayPin| {

@@ -62,7 +62,12 @@ impl TurnOff {
             // A load between output and return has its supply through a pull-up: the clamp pin is not its business.
             clamped: Fact::flag(
                 !matches!(load.supply, Supply::Return(_))
-                    && ways.by_clamp().any(|way| !matches!(way.target, Target::Perhaps(_))),
+                    && ways.by_clamp().any(|way| match way.target {
+                        Target::Perhaps(_) => false,
+                        // The bare return is the business of another card; behind a zener it is a level.
+                        Target::Return(_) => way.breakdown.is_none_or(|volts| volts.0 > 0.0),
+                        Target::OtherEnd | Target::Rail(_) => true,
+                    }),
             ),
             clamp_net: match site.array.clamp_of(channel.channel) {
                 Some(pin) => Fact::text(board.circuit.net_name(pin.net)).at(site.array.span, "the array"),
